@@ -1,0 +1,1 @@
+"""One analysis, in a straight line from spec and data to the record."""

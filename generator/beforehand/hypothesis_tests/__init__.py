@@ -1,0 +1,1 @@
+"""Statistical tests: one file for each, all of one shape."""

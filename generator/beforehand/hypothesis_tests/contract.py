@@ -1,0 +1,152 @@
+"""What a statistical test takes, gives and declares, and the decorator that enters it in the catalogue."""
+
+import inspect
+import math
+from collections.abc import Callable
+from dataclasses import dataclass, field
+from typing import Any, Generic, ParamSpec
+
+import numpy as np
+from numpy.typing import NDArray
+
+from beforehand.catalogue import Catalogue
+from beforehand.terms import Alternative, Design, OutcomeKind, Scale
+
+Values = NDArray[np.float64]
+P = ParamSpec("P")
+
+# Every test has these keyword-only parameters; what else its signature holds are its options.
+COMMON = ("null_value", "alternative", "confidence")
+
+
+@dataclass(frozen=True, kw_only=True)
+class Outcome:
+    """The result of one test.
+
+    ``lower`` and ``upper`` are the two-sided interval at the ``confidence`` asked for; a one-sided test at level a
+    reads its bound from the interval at 1 - 2a. NaN stands where a test has no such number (an exact test has no df).
+    ``n`` holds the analysed units per group, first group first; for pairs, the number of pairs.
+    """
+
+    estimate: float
+    lower: float
+    upper: float
+    statistic: float
+    df: float = math.nan
+    p: float
+    n: tuple[int, ...]
+    standard_error: float = math.nan
+    remarks: tuple[str, ...] = ()
+
+
+@dataclass(frozen=True)
+class NotComputed:
+    """Why a test has no result; the hypothesis still counts in its family."""
+
+    reason: str
+    n: tuple[int, ...] = ()
+
+
+Result = Outcome | NotComputed
+
+
+@dataclass(frozen=True, kw_only=True)
+class StatisticalTest(Generic[P]):
+    """One entry of the catalogue: what it declares, and the computation.
+
+    Calling the entry calls the test: ``welch_t(first, second, null_value=0.0, alternative="above", confidence=0.95)``.
+    """
+
+    title: str
+    design: Design
+    outcome: OutcomeKind
+    scale: Scale
+    estimates: str
+    """What the estimate estimates, in words: "difference in means"."""
+    parameter: str
+    """The same as a symbol: "μ₁ − μ₂"."""
+    statistic: str
+    """The name of the statistic: "t"."""
+    p_is: str
+    """How p is obtained, in words: "exact under normality"."""
+    null: str
+    """The null hypothesis in words."""
+    assumptions: tuple[str, ...]
+    second_route: str
+    """The independent second computation, and what it does not share with the first."""
+    bound: float
+    """Largest relative disagreement of the two computations that is accepted."""
+    reference: str
+    independent_units: bool
+    """Whether the test assumes that every row is an independent unit."""
+    compute: Callable[P, Result] = field(repr=False)
+
+    @property
+    def name(self) -> str:
+        """The word that a spec uses."""
+        return self.compute.__name__
+
+    @property
+    def null_default(self) -> float:
+        """The null value when a spec names none."""
+        return 1.0 if self.scale == "ratio" else 0.0
+
+    @property
+    def options(self) -> dict[str, inspect.Parameter]:
+        """The test's own options: the keyword-only parameters that not every test has."""
+        parameters = inspect.signature(self.compute).parameters.values()
+        return {p.name: p for p in parameters if p.kind is p.KEYWORD_ONLY and p.name not in COMMON}
+
+    def __call__(self, *samples: P.args, **settings: P.kwargs) -> Result:
+        """Run the test on clean arrays: no missing values, the units of one group in one array."""
+        return self.compute(*samples, **settings)
+
+    def again(self, *samples: Any, **settings: Any) -> Result:
+        """Run the second route, the function ``second_route`` in the entry's file, with the same call."""
+        result: Result = STATISTICAL_TESTS.module(self.name).second_route(*samples, **settings)
+        return result
+
+    def smallest_p(self, sizes: tuple[int, ...], pooled: Values | None, *, alternative: Alternative) -> float:
+        """Give the smallest p that this test could reach with groups of these sizes.
+
+        ``pooled`` are the outcomes of all groups together, unlabelled, or None when no data were read.
+        A test whose p can come arbitrarily near to 0 has no function ``smallest_p`` in its file, and gives 0.
+        """
+        module = STATISTICAL_TESTS.module(self.name)
+        if not hasattr(module, "smallest_p"):
+            return 0.0
+        return float(module.smallest_p(sizes, pooled, alternative=alternative))
+
+
+def statistical_test(
+    *,
+    title: str,
+    design: Design,
+    outcome: OutcomeKind,
+    scale: Scale,
+    estimates: str,
+    parameter: str,
+    statistic: str,
+    p_is: str,
+    null: str,
+    assumptions: tuple[str, ...],
+    second_route: str,
+    bound: float,
+    reference: str,
+    independent_units: bool = True,
+) -> Callable[[Callable[P, Result]], StatisticalTest[P]]:
+    """Enter a function in the catalogue of statistical tests with what it declares."""
+
+    def enter(compute: Callable[P, Result]) -> StatisticalTest[P]:
+        return StatisticalTest(
+            title=title, design=design, outcome=outcome, scale=scale, estimates=estimates, parameter=parameter,
+            statistic=statistic, p_is=p_is, null=null, assumptions=assumptions, second_route=second_route,
+            bound=bound, reference=reference, independent_units=independent_units, compute=compute,
+        )  # fmt: skip
+
+    return enter
+
+
+STATISTICAL_TESTS: Catalogue[StatisticalTest[Any]] = Catalogue(
+    "beforehand.hypothesis_tests.entries", kind="statistical test"
+)

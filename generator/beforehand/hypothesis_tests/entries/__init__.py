@@ -1,0 +1,1 @@
+"""The statistical tests, one to a file."""

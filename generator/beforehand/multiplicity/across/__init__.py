@@ -1,0 +1,1 @@
+"""Schemes: what the families of a study share, and which family is tested when."""

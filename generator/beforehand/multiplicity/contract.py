@@ -1,0 +1,200 @@
+"""What a multiplicity procedure takes, gives and declares, and the decorator that enters it in the catalogue."""
+
+import inspect
+from collections.abc import Callable
+from dataclasses import dataclass, field
+from typing import Any, Literal
+
+import numpy as np
+from numpy.typing import ArrayLike, NDArray
+
+from beforehand.catalogue import Catalogue
+from beforehand.terms import Criterion
+
+Ascending = NDArray[np.float64]
+"""p-values of one family, ascending."""
+Vector = NDArray[np.float64]
+
+FWER: Criterion = "familywise_error_rate"
+FDR: Criterion = "false_discovery_rate"
+PER_COMPARISON: Criterion = "per_comparison_error_rate"
+
+WHOLE = "whole"
+"""The replay needs nothing but p (and what the spec says): no ingredient is taken as recorded."""
+
+Matching = Literal["bonferroni"] | None
+"""Which simultaneous interval matches the decisions; None where none is in general use."""
+
+
+@dataclass(frozen=True, kw_only=True)
+class Steps:
+    """How each adjusted p arises, by rank: everything a pocket calculator needs.
+
+    At level a the p-value of rank i has to meet the threshold a / factor[i].
+    """
+
+    factor: Vector
+    """By how much the p-value of this rank is multiplied."""
+    product: Vector
+    """factor x p, before it is made monotone and capped at 1."""
+    adjusted: Vector
+    """The adjusted p-value."""
+    taken_from: NDArray[np.intp]
+    """The rank, counted from 0, whose product became the adjusted p."""
+
+
+def running_maximum(p: Ascending, *, factor: Vector) -> Steps:
+    """Adjust step-down: each rank takes the largest product so far, capped at 1."""
+    product = factor * p
+    adjusted = np.maximum.accumulate(product)
+    ranks = np.arange(p.size)
+    taken_from = np.maximum.accumulate(np.where(product >= adjusted, ranks, 0))
+    return Steps(factor=factor, product=product, adjusted=np.minimum(adjusted, 1.0), taken_from=taken_from)
+
+
+def running_minimum(p: Ascending, *, factor: Vector) -> Steps:
+    """Adjust step-up: each rank takes the smallest product from its own on, capped at 1."""
+    product = factor * p
+    adjusted = np.minimum.accumulate(product[::-1])[::-1]
+    ranks = np.arange(p.size)
+    last = max(p.size - 1, 0)
+    taken_from = np.minimum.accumulate(np.where(product <= adjusted, ranks, last)[::-1])[::-1]
+    return Steps(factor=factor, product=product, adjusted=np.minimum(adjusted, 1.0), taken_from=taken_from)
+
+
+def each_alone(p: Ascending, *, factor: Vector) -> Steps:
+    """Adjust in a single step: each rank keeps its own product, capped at 1."""
+    product = factor * p
+    return Steps(factor=factor, product=product, adjusted=np.minimum(product, 1.0), taken_from=np.arange(p.size))
+
+
+@dataclass(frozen=True)
+class Ordered:
+    """p-values with their ascending order, which several procedures may share."""
+
+    p: Vector
+    order: NDArray[np.intp]
+
+    @classmethod
+    def of(cls, p: "ArrayLike | Ordered") -> "Ordered":
+        """Check and sort p-values once (stable: equal values keep the order in which they came).
+
+        Raises
+        ------
+        ValueError
+            When the values are not one-dimensional numbers between 0 and 1.
+        """
+        if isinstance(p, Ordered):
+            return p
+        values = np.array(p, dtype=np.float64)  # a copy: the caller's array is never touched
+        if values.ndim != 1:
+            raise ValueError(f"p-values of one family are a one-dimensional array; found {values.ndim} dimensions")
+        if not np.all((values >= 0) & (values <= 1)):
+            raise ValueError("p-values lie between 0 and 1, and none is missing: a missing result counts as p = 1")
+        return cls(values, np.argsort(values, kind="stable"))
+
+    @property
+    def ascending(self) -> Ascending:
+        """The p-values in ascending order."""
+        return self.p[self.order]
+
+    def unsorted(self, by_rank: NDArray[Any]) -> NDArray[Any]:
+        """Bring values by rank back into the order in which the p-values came."""
+        result = np.empty_like(by_rank)
+        result[self.order] = by_rank
+        return result
+
+
+@dataclass(frozen=True, kw_only=True)
+class Procedure:
+    """One entry of the catalogue: what it declares, and the computation.
+
+    Calling the entry adjusts p-values in the order in which they come: ``holm([0.01, 0.04, 0.03])``.
+    """
+
+    title: str
+    controls: Criterion
+    strong: bool
+    """Whether control holds whichever nulls are true, not only when all are."""
+    valid_under: str
+    """The dependence between p-values under which the control holds."""
+    intervals: Matching
+    no_intervals_because: str
+    """One sentence for the report where no matching interval exists; empty where one does."""
+    replays: str
+    """``WHOLE``, or the ingredient that the replay takes as recorded."""
+    implies: tuple[Criterion, ...]
+    """Further criteria that this control implies."""
+    reference: str
+    adjust: Callable[..., Steps] = field(repr=False)
+
+    @property
+    def name(self) -> str:
+        """The word that a spec uses."""
+        return self.adjust.__name__
+
+    @property
+    def options(self) -> dict[str, inspect.Parameter]:
+        """The procedure's own options: its keyword-only parameters."""
+        parameters = inspect.signature(self.adjust).parameters.values()
+        return {p.name: p for p in parameters if p.kind is p.KEYWORD_ONLY}
+
+    def keeps(self, criterion: Criterion) -> bool:
+        """Whether the declared control implies a family's promise."""
+        return criterion == self.controls or criterion in self.implies
+
+    def steps(self, p: ArrayLike | Ordered, **options: Any) -> Steps:
+        """Give the steps by rank."""
+        return self.adjust(Ordered.of(p).ascending, **options)
+
+    def __call__(self, p: ArrayLike | Ordered, **options: Any) -> Vector:
+        """Give the adjusted p-values in the order of ``p``.
+
+        Parameters
+        ----------
+        p : array_like, shape (m,), or Ordered
+            Unadjusted p-values of one family, in any order.
+
+        Returns
+        -------
+        ndarray, shape (m,)
+            Adjusted p-values.
+        """
+        ordered = Ordered.of(p)
+        adjusted: Vector = ordered.unsorted(self.steps(ordered, **options).adjusted)
+        return adjusted
+
+    def replay(self, p: list[float], level: float, **options: Any) -> dict[str, list[Any]]:
+        """Adjust again on plain lists, another way round: ``{"adjusted": [...], "rejected": [...]}``.
+
+        The text of this function in the entry's file is also what recheck.py is made of.
+        """
+        again: dict[str, list[Any]] = PROCEDURES.module(self.name).replay(p, level, **options)
+        return again
+
+
+def procedure(
+    *,
+    title: str,
+    controls: Criterion,
+    strong: bool,
+    valid_under: str,
+    intervals: Matching,
+    replays: str,
+    reference: str,
+    no_intervals_because: str = "",
+    implies: tuple[Criterion, ...] = (),
+) -> Callable[[Callable[..., Steps]], Procedure]:
+    """Enter a function on ascending p-values in the catalogue of procedures with what it declares."""
+
+    def enter(adjust: Callable[..., Steps]) -> Procedure:
+        return Procedure(
+            title=title, controls=controls, strong=strong, valid_under=valid_under, intervals=intervals,
+            no_intervals_because=no_intervals_because, replays=replays, implies=implies, reference=reference,
+            adjust=adjust,
+        )  # fmt: skip
+
+    return enter
+
+
+PROCEDURES: Catalogue[Procedure] = Catalogue("beforehand.multiplicity.entries", kind="multiplicity procedure")

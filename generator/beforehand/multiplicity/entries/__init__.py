@@ -1,0 +1,1 @@
+"""The multiplicity procedures, one to a file."""

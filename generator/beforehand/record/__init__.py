@@ -1,0 +1,1 @@
+"""The results of record and the run folder."""

@@ -1,0 +1,1 @@
+"""The report: words and figures from the record alone."""

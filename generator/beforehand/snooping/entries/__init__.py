@@ -1,0 +1,1 @@
+"""The warning rules, one to a file."""
