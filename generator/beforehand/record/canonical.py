@@ -70,7 +70,7 @@ def _column(kind: str, cells: tuple[str, ...]) -> Any:
 def _adapter() -> TypeAdapter[Any]:
     global _RECORD  # noqa: PLW0603 -- building the adapter takes longer than reading a record
     if _RECORD is None:
-        _RECORD = TypeAdapter(Record, config={"arbitrary_types_allowed": True})
+        _RECORD = TypeAdapter(Record)
     return _RECORD
 
 

@@ -81,6 +81,8 @@ class Results:
     """Largest number of hypotheses in the family for which a rejection would stand (the others with p = 1); 0 where
     there is no rejection."""
 
+    __pydantic_config__ = {"arbitrary_types_allowed": True}  # noqa: RUF012 -- read by pydantic, for the arrays
+
     def __len__(self) -> int:
         return len(self.id)
 
