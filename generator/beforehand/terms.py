@@ -46,6 +46,27 @@ ColumnRole = Literal[
     "cluster", "stratum", "time", "event", "identifier",
 ]  # fmt: skip
 
+# What the value of an expression is, row by row.
+ValueKind = Literal["number", "text", "date", "truth"]
+MissingMethod = Literal["complete_cases", "fail", "worst_case", "best_case", "multiple_imputation"]
+
+# Every word that a spec may answer to: the warning rules of snooping, built or not.
+WARNING_RULES: tuple[str, ...] = (
+    "assumed_correlation_used", "baseline_tests", "cannot_reject", "claim_logic_mismatch",
+    "contrast_fitted_to_means", "covariates_screened", "criterion_changed", "cut_point_searched",
+    "dependence_doubtful", "direction_changed", "exclusions_changed", "extreme_pair_picked", "families_regrouped",
+    "flexible_outlier_rule", "fragile_decision", "history_gap", "hypothesis_added_after_seal",
+    "intervals_not_adjusted", "looks_off_schedule", "margin_changed", "margin_without_basis",
+    "missingness_differs_by_group", "no_difference_claimed", "not_sealed_before_data", "one_of_many_times",
+    "one_sided_at_full_level", "order_or_graph_changed", "outcomes_edited_after_unblinding",
+    "outcomes_without_hypothesis", "padded_family", "planned_test_without_result", "post_allocation_exclusion",
+    "pretest_chooses_test", "protected_pairs", "repeated_units", "resampling_near_threshold",
+    "same_rows_suggest_and_test", "sample_size_off_plan", "sealed_hypothesis_missing", "sealed_spec_changed",
+    "sets_disagree", "several_corrected_versions", "significant_here_not_there", "sizing_without_multiplicity",
+    "subgroup_without_interaction", "subset_of_discoveries", "tested_past_closed_gate",
+    "unadjusted_in_confirmatory", "underpowered_selection", "undeclared_looks", "variants_tried", "weights_changed",
+)  # fmt: skip
+
 STATE_WORDS: dict[State, str] = {
     "rejected": "rejected",
     "rejected_against_claim": "rejected, against the claim",
