@@ -19,6 +19,7 @@ from beforehand.spec.model.words import (
     Probability,
     Prose,
     Reference,
+    StatisticalTestWord,
     Version,
 )  # fmt: skip
 from beforehand.terms import Alternative, Intent
@@ -46,7 +47,7 @@ class Study(Keys):
 class Change(Keys):
     """What a supportive analysis does another way."""
 
-    test: Reference | None = None
+    test: StatisticalTestWord | None = None
     """Another test."""
     options: dict[Name, Setting] | None = None
     """Other options of the test."""

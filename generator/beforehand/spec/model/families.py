@@ -13,8 +13,8 @@ from beforehand.spec.model.words import (
     Name,
     Names,
     Probability,
+    ProcedureWord,
     Prose,
-    Reference,
     References,
     Weight,
     refused,
@@ -108,6 +108,8 @@ class HypothesesFrom(PerHypothesis):
     """What makes a hypothesis: the column of labels, the word 'outcome' beside 'outcomes', or 'feature'."""
     outcomes: Names | None = None
     """The columns that are tested, one hypothesis each."""
+    values: Names | None = None
+    """The values of these columns that count as the event, in a test of events."""
     groups: Groups | None = None
     """The two groups that are compared."""
     p: Name | None = None
@@ -150,7 +152,7 @@ class Family(Keys):
     """What its outcomes are to the study."""
     reason: Reason | None = None
     """Why the analysis is made."""
-    procedure: Reference
+    procedure: ProcedureWord
     """The multiplicity procedure; `beforehand methods` lists them."""
     procedure_options: dict[Name, Setting] = Field(default_factory=dict)
     """Options of the procedure."""

@@ -4,7 +4,19 @@ from typing import Annotated, Any, Literal, Self
 
 from pydantic import Discriminator, Field, Tag, model_validator
 
-from beforehand.spec.model.words import Condition, Confidence, Id, Keys, Name, Names, Prose, Reference, Weight, refused
+from beforehand.spec.model.words import (
+    Condition,
+    Confidence,
+    Id,
+    Keys,
+    Name,
+    Names,
+    Prose,
+    Reference,
+    StatisticalTestWord,
+    Weight,
+    refused,
+)
 from beforehand.terms import Alternative, ClaimDirection, MissingMethod, Purpose, Reason
 
 NullForm = Literal["at", "at_most", "at_least", "outside", "inside"]
@@ -178,7 +190,7 @@ class NonDetect(Keys):
 class PerHypothesis(Keys):
     """The keys that a hypothesis and the short forms share."""
 
-    test: Reference
+    test: StatisticalTestWord
     """The statistical test; `beforehand methods` lists them."""
     options: dict[Name, Setting] = Field(default_factory=dict)
     """Options of the test."""

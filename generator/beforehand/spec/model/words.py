@@ -1,6 +1,7 @@
 """The kinds of value that keys of a spec hold: ids, names, prose, exact numbers, paths, dates, expressions."""
 
 import datetime
+import difflib
 import re
 from fractions import Fraction
 from typing import Annotated, Any
@@ -17,6 +18,9 @@ from pydantic import (
 from pydantic.json_schema import JsonSchemaValue
 from pydantic_core import CoreSchema, PydanticCustomError, core_schema
 
+from beforehand.hypothesis_tests.contract import STATISTICAL_TESTS
+from beforehand.multiplicity.contract import PROCEDURES
+from beforehand.spec import availability
 from beforehand.spec.expressions import ExpressionFault, parse
 
 LONGEST_NAME = 200  # characters of a column, a level, a label: what a table cell can still show
@@ -41,6 +45,11 @@ PARTICULAR = Part()
 def refused(text: str) -> PydanticCustomError:
     """Make the fault that says what was expected; ``wording`` puts the place and what was found around it."""
     return PydanticCustomError("refused", "{text}", {"text": text})
+
+
+def sentence(text: str) -> PydanticCustomError:
+    """Make a fault that is whole as it stands."""
+    return PydanticCustomError("sentence", "{text}", {"text": text})
 
 
 class Exact(float):
@@ -161,6 +170,22 @@ def _id(text: str) -> str:
     return text
 
 
+def _test(word: str) -> str:
+    return _known(word, (*STATISTICAL_TESTS, *availability.TESTS), STATISTICAL_TESTS.kind)
+
+
+def _procedure(word: str) -> str:
+    return _known(word, (*PROCEDURES, *availability.PROCEDURES_LATER), PROCEDURES.kind)
+
+
+def _known(word: str, words: tuple[str, ...], kind: str) -> str:
+    if word in words:
+        return word
+    near = difflib.get_close_matches(word, words, n=1, cutoff=0.5)
+    hint = f"The nearest name is '{near[0]}'." if near else "`beforehand methods` lists them."
+    raise sentence(f"no {kind} is called '{word}'. {hint}")
+
+
 def _version(written: Any) -> Any:
     if written is not True and isinstance(written, (int, float)) and written == 1:
         return 1
@@ -182,6 +207,8 @@ def _ascending(pair: tuple[float, float]) -> tuple[float, float]:
 
 Id = Annotated[str, AfterValidator(_id), Field(json_schema_extra={"pattern": "^[a-z][a-z0-9_]*$"})]
 Name = Annotated[str, AfterValidator(_name)]
+StatisticalTestWord = Annotated[str, AfterValidator(_test)]
+ProcedureWord = Annotated[str, AfterValidator(_procedure)]
 Reference = Annotated[str, AfterValidator(_name)]
 Code = Annotated[str, AfterValidator(_code)]
 Prose = Annotated[str, AfterValidator(_claim), Field(max_length=LONGEST_PROSE)]

@@ -1,0 +1,101 @@
+"""What has its place in the spec language and is not built yet: the one list, and how it is refused."""
+
+from collections.abc import Iterator
+from typing import Any
+
+from pydantic import BaseModel
+
+from beforehand.hypothesis_tests.contract import STATISTICAL_TESTS
+from beforehand.multiplicity.contract import PROCEDURES
+from beforehand.spec.places import Path
+
+TESTS = (
+    "ancova", "binomial", "brunner_munzel", "cluster_t", "crossover_t", "crossover_ratio", "equal_variances",
+    "generation_wilcoxon", "interaction", "left_censored_rank", "log_rank", "mcnemar", "mixed_model", "permutation",
+    "poisson_rate", "proportional_hazards", "rate_ratio", "risk_difference", "risk_ratio", "sign", "spearman",
+    "t_contrast", "trend",
+)  # fmt: skip
+PROCEDURES_LATER = (
+    "all_or_none", "benjamini_yekutieli", "closed_testing", "dunnett", "exceedance_step_down", "fallback",
+    "fixed_sequence", "games_howell", "hochberg", "holm_sidak", "hommel", "local_false_discovery_rate", "max_t",
+    "min_p", "online_false_discovery_rate", "romano_wolf", "scheffe", "sidak", "step_down_dunnett", "storey_q",
+    "truncated_hochberg", "truncated_holm", "tukey", "two_stage_adaptive", "weighted_benjamini_hochberg",
+    "weighted_bonferroni",
+)  # fmt: skip
+
+KEYS: dict[str, frozenset[str]] = {
+    "Document": frozenset({"graph", "looks", "supportive", "describe"}),
+    "DataSet": frozenset({"feature", "samples"}),
+    "Family": frozenset({"share", "truncation", "exploratory_after_gate", "dependence"}),
+    "_Promised": frozenset({"false_rejections", "false_share"}),
+    "PerHypothesis": frozenset({
+        "switch_to_superiority", "strata", "cluster", "random", "covariates", "exposure", "time", "non_detect",
+        "period", "sequence", "subject", "weight", "truth",
+    }),
+    "HypothesesFrom": frozenset({"planned_at_most", "keep"}),
+    "MissingValues": frozenset({"imputations", "using", "shift"}),
+}  # fmt: skip
+
+WORDS: dict[tuple[str, str], tuple[str, ...]] = {
+    ("DataSet", "rows_are"): ("features",),
+    ("Promise", "criterion"): (
+        "k_familywise_error_rate", "per_family_error_rate", "false_discovery_exceedance",
+    ),
+    ("StudyPromise", "criterion"): (
+        "k_familywise_error_rate", "per_family_error_rate", "false_discovery_exceedance",
+    ),
+    ("StudyPromise", "across_families"): ("parallel", "shares", "graph"),
+    ("MissingValues", "method"): ("worst_case", "best_case", "multiple_imputation"),
+    ("Family", "success"): ("all",),
+}  # fmt: skip
+
+SUFFIXES = (".csv", ".tsv", ".csv.gz", ".tsv.gz")
+SUFFIXES_LATER = (".parquet", ".xlsx", ".xpt")
+
+
+def refusals(document: BaseModel) -> Iterator[tuple[Path, str, bool]]:
+    """Find what a sound spec uses and is not built: path, sentence, and whether the key itself is meant."""
+    yield from _within(document, ())
+
+
+def _within(model: BaseModel, path: Path) -> Iterator[tuple[Path, str, bool]]:
+    for name, field in type(model).model_fields.items():
+        if name not in model.model_fields_set:
+            continue
+        key, value = field.alias or name, getattr(model, name)
+        if is_later(type(model), key):
+            if value is not False:  # the default, written out
+                yield (*path, key), f"'{key}' is not available yet", True
+            continue
+        yield from _word(model, key, value, (*path, key))
+        yield from _below(value, (*path, key))
+
+
+def is_later(model: type[BaseModel], key: str) -> bool:
+    """Whether a key has its place and is not built yet."""
+    return any(key in KEYS.get(kind.__name__, ()) for kind in model.__mro__)
+
+
+def _below(value: Any, path: Path) -> Iterator[tuple[Path, str, bool]]:
+    if isinstance(value, BaseModel):
+        yield from _within(value, path)
+    elif isinstance(value, tuple):
+        for place, item in enumerate(value):
+            yield from _below(item, (*path, place))
+    elif isinstance(value, dict):
+        for key, item in value.items():
+            yield from _below(item, (*path, key))
+
+
+def _word(model: BaseModel, key: str, value: Any, path: Path) -> Iterator[tuple[Path, str, bool]]:
+    later = WORDS.get((type(model).__name__, key), ())
+    if isinstance(value, str) and value in later:
+        yield path, f"'{value}' for '{key}' is not available yet", False
+    elif key == "success" and not isinstance(value, str):
+        yield path, "'at_least' for 'success' is not available yet", False
+    elif key == "test" and value not in STATISTICAL_TESTS:
+        yield path, f"the test '{value}' is not available yet. There are: {', '.join(STATISTICAL_TESTS)}.", False
+    elif key == "procedure" and value not in PROCEDURES:
+        yield path, f"the procedure '{value}' is not available yet. There are: {', '.join(PROCEDURES)}.", False
+    elif key == "file" and value.endswith(SUFFIXES_LATER):
+        yield path, f"files such as '{value}' are not available yet. Save the table as .csv or .tsv.", False

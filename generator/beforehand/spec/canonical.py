@@ -1,0 +1,87 @@
+"""The two parts of a spec in the form of RFC 8785: the plan, which is sealed, and the particulars."""
+
+import hashlib
+from typing import Any, cast
+
+import rfc8785
+from pydantic import BaseModel
+
+from beforehand.spec.model import PARTICULAR, Document, Exact
+from beforehand.spec.planned import PlannedFamily
+
+_EMPTY: tuple[Any, ...] = ({}, (), [], None)
+
+
+def canonical_parts(document: Document, families: tuple[PlannedFamily, ...]) -> tuple[bytes, bytes]:
+    """Give the plan, with the expansion and every default, and the particulars."""
+    plan, particulars = _split(document)
+    plan["families"] = [_family(family) for family in families]
+    return rfc8785.dumps(plan), rfc8785.dumps(particulars)
+
+
+def checksum(part: bytes) -> str:
+    """Give the SHA-256 of a part, as ``sha256sum`` prints it."""
+    return hashlib.sha256(part).hexdigest()
+
+
+def _family(family: PlannedFamily) -> dict[str, Any]:
+    """Write a family with its members, in place of the short form they come from."""
+    written = {
+        "id": family.id,
+        "question": family.question,
+        "purpose": family.purpose,
+        "procedure": family.procedure,
+        "procedure_options": dict(family.procedure_options),
+        "promise": _plain(family.promise),
+        "stands_apart": family.stands_apart,
+        "success": _plain(family.success),
+        "planned": family.planned,
+        "members": [_plain(member) for member in family.members] if not family.from_data else None,
+        "members_from": _plain(family.from_data),
+    }
+    return {key: value for key, value in written.items() if value is not None}
+
+
+def _split(model: BaseModel) -> tuple[dict[str, Any], dict[str, Any]]:
+    """Divide the keys of a block; an entry of a list keeps its id in both parts."""
+    plan: dict[str, Any] = {}
+    particulars: dict[str, Any] = {}
+    for key, value, particular in _keys(model):
+        if particular:
+            particulars[key] = _plain(value)
+        elif isinstance(value, BaseModel):
+            plan[key], inner = _split(value)
+            particulars.update({key: inner} if inner else {})
+        elif isinstance(value, tuple) and all(isinstance(item, BaseModel) for item in value):
+            parts = [_split(cast(BaseModel, item)) for item in value]
+            plan[key] = [part[0] for part in parts]
+            pairs = zip(value, parts, strict=True)
+            own = [{"id": getattr(item, "id", None), **part[1]} for item, part in pairs if part[1]]
+            particulars.update({key: own} if own else {})
+        else:
+            plan[key] = _plain(value)
+    return plan, particulars
+
+
+def _keys(model: BaseModel) -> list[tuple[str, Any, bool]]:
+    """Give the keys that say something, as they are written, and whether each is a particular."""
+    return [
+        (field.alias or name, getattr(model, name), PARTICULAR in field.metadata)
+        for name, field in type(model).model_fields.items()
+        if getattr(model, name) not in _EMPTY
+    ]
+
+
+def _plain(value: Any) -> Any:
+    """Turn a value of the models into what JSON knows."""
+    if isinstance(value, BaseModel):
+        extra = {key: _plain(item) for key, item in (value.__pydantic_extra__ or {}).items()}
+        written = {key: _plain(item) for key, item, _ in _keys(value)}
+        return {**{key: item for key, item in written.items() if item != {}}, **extra}
+    if isinstance(value, Exact):
+        return value.canonical()
+    if isinstance(value, tuple):
+        return [_plain(item) for item in value]
+    if isinstance(value, dict):
+        return {key: _plain(item) for key, item in value.items()}
+    return value

@@ -1,0 +1,183 @@
+"""From the short forms to single hypotheses with every default filled in, from the spec alone."""
+
+import dataclasses
+import itertools
+import re
+from collections.abc import Iterator, Mapping
+
+from beforehand.errors import Fault, SpecFault
+from beforehand.hypothesis_tests.contract import STATISTICAL_TESTS
+from beforehand.multiplicity.contract import PROCEDURES
+from beforehand.spec.model import (
+    Comparisons,
+    Document,
+    EachWith,
+    EventOutcome,
+    Family,
+    Groups,
+    Hypothesis,
+    NullHypothesis,
+    Outcome,
+    PerHypothesis,
+    Promise,
+    StudyPromise,
+    WrittenHypothesis,
+)
+from beforehand.spec.options import with_defaults
+from beforehand.spec.planned import PlannedFamily, Spec
+
+_RESERVED = "/-%"
+_PLACEHOLDER = re.compile(r"\{(group|first|second|feature)\}")
+
+
+def escape(text: str) -> str:
+    """Write a text of the data so that it can be part of an id: ``/ - %`` and unprintable characters as %XX."""
+    return "".join(
+        character
+        if character.isprintable() and character not in _RESERVED
+        else "".join(f"%{byte:02X}" for byte in character.encode())
+        for character in text
+    )
+
+
+def expand(document: Document) -> tuple[PlannedFamily, ...]:
+    """Give the families with the members that follow from the spec alone."""
+    return tuple(_planned(family, document) for family in document.families)
+
+
+def with_features(spec: Spec, labels: Mapping[str, tuple[str, ...]]) -> Spec:
+    """Give the spec with the members that the rows of the data make, in the order of their labels.
+
+    Raises SpecFault where a family has another number of rows than the spec plans.
+    """
+    faults = [
+        fault for family in spec.families if family.id in labels for fault in _count(spec, family, labels[family.id])
+    ]
+    if faults:
+        raise SpecFault(spec.path.name, faults)
+    return dataclasses.replace(
+        spec,
+        families=tuple(
+            _with_rows(spec.document, family, labels[family.id]) if family.id in labels else family
+            for family in spec.families
+        ),
+    )
+
+
+def _count(spec: Spec, family: PlannedFamily, labels: tuple[str, ...]) -> Iterator[Fault]:
+    place = (*spec.place_of(family.id), "hypotheses_from")
+    if len(labels) != family.planned:
+        yield spec.fault(
+            (*place, "planned"),
+            f"family '{family.id}' plans {family.planned} hypotheses and the data have {len(labels)}. "
+            "Correct the data, or the number and the reason for it.",
+        )
+    for label in sorted({label for label in labels if labels.count(label) > 1})[:10]:
+        yield spec.fault(
+            (*place, "each"), f"the label '{label}' stands in several rows; in family '{family.id}' each names one."
+        )
+
+
+def _with_rows(document: Document, family: PlannedFamily, labels: tuple[str, ...]) -> PlannedFamily:
+    written = next(entry for entry in document.families if entry.id == family.id)
+    if family.from_data is None:
+        return family
+    members = (_member(document, written, family.from_data, escape(label), feature=label) for label in labels)
+    return dataclasses.replace(family, members=tuple(members))
+
+
+def _planned(family: Family, document: Document) -> PlannedFamily:
+    members = tuple(_members(family, document))
+    source = family.hypotheses_from
+    from_data = source if source and source.outcomes is None else None
+    return PlannedFamily(
+        id=family.id,
+        question=family.question,
+        purpose=family.purpose,
+        procedure=family.procedure,
+        procedure_options=with_defaults(family.procedure_options, PROCEDURES[family.procedure]),
+        promise=family.promise or _of_study(document.promise),
+        success=family.success,
+        members=members,
+        planned=from_data.planned or 0 if from_data else len(members),
+        from_data=from_data,
+        stands_apart=family.promise is not None,
+    )
+
+
+def _of_study(promise: StudyPromise) -> Promise:
+    shared = {name: getattr(promise, name) for name in Promise.model_fields}
+    return Promise.model_construct(_fields_set={name for name in shared if shared[name] is not None}, **shared)
+
+
+def _members(family: Family, document: Document) -> Iterator[Hypothesis]:
+    for written in family.written:
+        if isinstance(written, WrittenHypothesis):
+            yield _member(document, family, written, "", outcome=written.outcome, groups=written.groups)
+        elif isinstance(written, Comparisons):
+            for first, second in pairs_of(written, levels_of(document, written)):
+                groups = Groups(column=written.groups, first=first, second=second)
+                name = f"{escape(first)}-{escape(second)}"
+                yield _member(document, family, written, name, outcome=written.outcome, groups=groups)
+        else:
+            for column in written.outcomes or ():
+                outcome = EventOutcome(column=column, values=written.values) if written.values else column
+                yield _member(
+                    document, family, written, escape(column), outcome=outcome, groups=written.groups, feature=column
+                )
+
+
+def levels_of(document: Document, written: Comparisons) -> tuple[str, ...]:
+    """Give the declared levels of the column whose pairs are compared."""
+    data_set = next(entry for entry in document.data if entry.id == (written.data or document.data[0].id))
+    column = data_set.columns.get(written.groups) or data_set.derive.get(written.groups)
+    return (column.levels if column else None) or ()
+
+
+def pairs_of(written: Comparisons, levels: tuple[str, ...]) -> list[tuple[str, str]]:
+    """Give the pairs in the order in which they are tested: first minus second."""
+    if isinstance(written.pairs, EachWith):
+        reference = written.pairs.each_with
+        return [(level, reference) for level in levels if level != reference]
+    return [(later, earlier) for earlier, later in itertools.combinations(levels, 2)]
+
+
+def _member(
+    document: Document,
+    family: Family,
+    written: PerHypothesis,
+    name: str,
+    *,
+    outcome: Outcome | None = None,
+    groups: Groups | None = None,
+    feature: str | None = None,
+) -> Hypothesis:
+    """Make one member: what is written, and a value for what is left out."""
+    test = STATISTICAL_TESTS[written.test]
+    shared = {key: getattr(written, key) for key in PerHypothesis.model_fields}
+    shared.update(
+        id=written.id if isinstance(written, WrittenHypothesis) else f"{family.id}/{name}",
+        family=family.id,
+        data=written.data or document.data[0].id,
+        null_hypothesis=written.null_hypothesis or NullHypothesis(at=test.null_default),
+        alternative=written.alternative or ("two_sided" if test.design == "supplied" else None),
+        claim=_claim(written.claim, groups, feature),
+        options=with_defaults(written.options, test),
+        purpose=written.purpose or family.purpose,
+        reason=written.reason or family.reason,
+        outcome=outcome,
+        groups=groups,
+        feature=feature,
+    )
+    return Hypothesis.model_construct(_fields_set=set(shared), **shared)
+
+
+def _claim(claim: str | None, groups: Groups | None, feature: str | None) -> str | None:
+    """Replace the names in braces by what they stand for; every other brace is text."""
+    words = {"feature": feature}
+    if groups:
+        words.update(group=groups.first, first=groups.first, second=groups.second)
+    return claim and _PLACEHOLDER.sub(lambda match: words.get(match[1]) or match[0], claim)
+
+
+__all__ = ["escape", "expand", "with_features"]

@@ -1,0 +1,102 @@
+"""From the file to the Spec: read, check key by key, check across keys, expand; all faults at once."""
+
+from dataclasses import dataclass
+from pathlib import Path
+from typing import Any
+
+from pydantic import ValidationError
+
+from beforehand.errors import Fault, SpecFault
+from beforehand.spec import availability, places, wording
+from beforehand.spec.canonical import canonical_parts
+from beforehand.spec.checks import faults_across
+from beforehand.spec.expand import expand
+from beforehand.spec.model import Document
+from beforehand.spec.planned import PlannedFamily, Spec
+
+__all__ = ["PlannedFamily", "Spec", "load_spec", "read_spec"]
+
+# Without these nothing can be said about the rest; every other section may be left out or be shorter.
+_NEEDED = ("beforehand", "study", "data", "promise")
+
+
+@dataclass(frozen=True)
+class _Sound:
+    """The part of a spec whose every key is sound; ``families`` are the numbers of its families in the file."""
+
+    document: Document
+    families: tuple[int, ...]
+    whole: bool
+
+    def in_file(self, path: places.Path) -> places.Path:
+        if path[:1] == ("families",) and len(path) > 1:
+            return ("families", self.families[int(path[1])], *path[2:])
+        return path
+
+
+def load_spec(path: Path) -> Spec:
+    """Read a spec from its file; SpecFault holds everything that is wrong with it."""
+    path = Path(path)
+    try:
+        source = path.read_bytes()
+    except OSError as error:
+        raise SpecFault(path.name, f"the file can't be read: {error.strerror}") from None
+    return read_spec(source, path)
+
+
+def read_spec(source: bytes, path: Path) -> Spec:
+    """Read a spec from its bytes; ``path`` is where they lie, and its folder is where data files are looked for."""
+    try:
+        reading = places.read(source)
+    except places.NotYaml as fault:
+        raise SpecFault(path.name, fault.faults) from None
+    if not isinstance(reading.value, dict) or not reading.value:
+        raise SpecFault(path.name, "this is no spec: it has no keys. `beforehand draft` writes one to begin with.")
+    document, faults = _checked(reading)
+    if document is None:
+        raise SpecFault(path.name, faults)
+    families = expand(document)
+    plan, particulars = canonical_parts(document, families)
+    return Spec(path, source, document, families, plan, particulars, reading.places)
+
+
+def _checked(reading: places.Reading) -> tuple[Document | None, list[Fault]]:
+    """Check every key, and across keys where they are sound; the document only when nothing is wrong."""
+    faults = list(reading.faults)
+    unsound = [*reading.trapped]
+    try:
+        document = Document.model_validate(reading.value)
+    except ValidationError as error:
+        worded = wording.faults_of(error.errors(include_url=False), reading)
+        faults += [fault for _, fault in worded]
+        unsound += [path for path, _ in worded]
+        document = None
+    sound = _sound(reading.value, unsound)
+    if sound:
+        faults += _across(sound, reading.places)
+    return (None if faults else document), faults
+
+
+def _across(sound: _Sound, where: places.Places) -> list[Fault]:
+    faults = [
+        where.fault(sound.in_file(path), text, at_key=at_key)
+        for path, text, at_key in availability.refusals(sound.document)
+    ]
+    return faults + [
+        where.fault(sound.in_file(path), text) for path, text in faults_across(sound.document, whole=sound.whole)
+    ]
+
+
+def _sound(value: dict[str, Any], unsound: list[places.Path]) -> _Sound | None:
+    """Leave out the sections and families in which something is wrong; None where too little is left."""
+    sections = {path[0] for path in unsound if path}
+    if () in unsound or sections.intersection(_NEEDED) or not isinstance(value.get("families"), tuple):
+        return None
+    wrong = {path[1] for path in unsound if path[0] == "families" and len(path) > 1}
+    kept = tuple(number for number in range(len(value["families"])) if number not in wrong)
+    rest = {key: part for key, part in value.items() if key == "families" or key not in sections}
+    rest["families"] = tuple(value["families"][number] for number in kept)
+    try:
+        return _Sound(Document.model_validate(rest), kept, not unsound)
+    except ValidationError:
+        return None
