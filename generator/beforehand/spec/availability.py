@@ -7,7 +7,7 @@ from pydantic import BaseModel
 
 from beforehand.hypothesis_tests.contract import STATISTICAL_TESTS
 from beforehand.multiplicity.contract import PROCEDURES
-from beforehand.spec.places import Path
+from beforehand.spec.places import Finding, Path
 
 TESTS = (
     "ancova", "binomial", "brunner_munzel", "cluster_t", "crossover_t", "crossover_ratio", "equal_variances",
@@ -53,19 +53,19 @@ SUFFIXES = (".csv", ".tsv", ".csv.gz", ".tsv.gz")
 SUFFIXES_LATER = (".parquet", ".xlsx", ".xpt")
 
 
-def refusals(document: BaseModel) -> Iterator[tuple[Path, str, bool]]:
-    """Find what a sound spec uses and is not built: path, sentence, and whether the key itself is meant."""
+def refusals(document: BaseModel) -> Iterator[Finding]:
+    """Find what a sound spec uses and is not built."""
     yield from _within(document, ())
 
 
-def _within(model: BaseModel, path: Path) -> Iterator[tuple[Path, str, bool]]:
+def _within(model: BaseModel, path: Path) -> Iterator[Finding]:
     for name, field in type(model).model_fields.items():
         if name not in model.model_fields_set:
             continue
         key, value = field.alias or name, getattr(model, name)
         if is_later(type(model), key):
             if value is not False:  # the default, written out
-                yield (*path, key), f"'{key}' is not available yet", True
+                yield Finding((*path, key), f"'{key}' is not available yet", at_key=True)
             continue
         yield from _word(model, key, value, (*path, key))
         yield from _below(value, (*path, key))
@@ -76,7 +76,7 @@ def is_later(model: type[BaseModel], key: str) -> bool:
     return any(key in KEYS.get(kind.__name__, ()) for kind in model.__mro__)
 
 
-def _below(value: Any, path: Path) -> Iterator[tuple[Path, str, bool]]:
+def _below(value: Any, path: Path) -> Iterator[Finding]:
     if isinstance(value, BaseModel):
         yield from _within(value, path)
     elif isinstance(value, tuple):
@@ -87,15 +87,15 @@ def _below(value: Any, path: Path) -> Iterator[tuple[Path, str, bool]]:
             yield from _below(item, (*path, key))
 
 
-def _word(model: BaseModel, key: str, value: Any, path: Path) -> Iterator[tuple[Path, str, bool]]:
+def _word(model: BaseModel, key: str, value: Any, path: Path) -> Iterator[Finding]:
     later = WORDS.get((type(model).__name__, key), ())
     if isinstance(value, str) and value in later:
-        yield path, f"'{value}' for '{key}' is not available yet", False
+        yield Finding(path, f"'{value}' for '{key}' is not available yet")
     elif key == "success" and not isinstance(value, str):
-        yield path, "'at_least' for 'success' is not available yet", False
+        yield Finding(path, "'at_least' for 'success' is not available yet")
     elif key == "test" and value not in STATISTICAL_TESTS:
-        yield path, f"the test '{value}' is not available yet. There are: {', '.join(STATISTICAL_TESTS)}.", False
+        yield Finding(path, f"the test '{value}' is not available yet. There are: {', '.join(STATISTICAL_TESTS)}.")
     elif key == "procedure" and value not in PROCEDURES:
-        yield path, f"the procedure '{value}' is not available yet. There are: {', '.join(PROCEDURES)}.", False
+        yield Finding(path, f"the procedure '{value}' is not available yet. There are: {', '.join(PROCEDURES)}.")
     elif key == "file" and value.endswith(SUFFIXES_LATER):
-        yield path, f"files such as '{value}' are not available yet. Save the table as .csv or .tsv.", False
+        yield Finding(path, f"files such as '{value}' are not available yet. Save the table as .csv or .tsv.")

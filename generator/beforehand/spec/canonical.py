@@ -32,12 +32,12 @@ def _family(family: PlannedFamily) -> dict[str, Any]:
         "purpose": family.purpose,
         "procedure": family.procedure,
         "procedure_options": dict(family.procedure_options),
-        "promise": _plain(family.promise),
+        "promise": plain(family.promise),
         "stands_apart": family.stands_apart,
-        "success": _plain(family.success),
+        "success": plain(family.success),
         "planned": family.planned,
-        "members": [_plain(member) for member in family.members] if not family.from_data else None,
-        "members_from": _plain(family.from_data),
+        "members": [plain(member) for member in family.members] if not family.from_data else None,
+        "members_from": plain(family.from_data),
     }
     return {key: value for key, value in written.items() if value is not None}
 
@@ -48,7 +48,7 @@ def _split(model: BaseModel) -> tuple[dict[str, Any], dict[str, Any]]:
     particulars: dict[str, Any] = {}
     for key, value, particular in _keys(model):
         if particular:
-            particulars[key] = _plain(value)
+            particulars[key] = plain(value)
         elif isinstance(value, BaseModel):
             plan[key], inner = _split(value)
             particulars.update({key: inner} if inner else {})
@@ -59,7 +59,7 @@ def _split(model: BaseModel) -> tuple[dict[str, Any], dict[str, Any]]:
             own = [{"id": getattr(item, "id", None), **part[1]} for item, part in pairs if part[1]]
             particulars.update({key: own} if own else {})
         else:
-            plan[key] = _plain(value)
+            plan[key] = plain(value)
     return plan, particulars
 
 
@@ -72,16 +72,16 @@ def _keys(model: BaseModel) -> list[tuple[str, Any, bool]]:
     ]
 
 
-def _plain(value: Any) -> Any:
+def plain(value: Any) -> Any:
     """Turn a value of the models into what JSON knows."""
     if isinstance(value, BaseModel):
-        extra = {key: _plain(item) for key, item in (value.__pydantic_extra__ or {}).items()}
-        written = {key: _plain(item) for key, item, _ in _keys(value)}
+        extra = {key: plain(item) for key, item in (value.__pydantic_extra__ or {}).items()}
+        written = {key: plain(item) for key, item, _ in _keys(value)}
         return {**{key: item for key, item in written.items() if item != {}}, **extra}
     if isinstance(value, Exact):
         return value.canonical()
     if isinstance(value, tuple):
-        return [_plain(item) for item in value]
+        return [plain(item) for item in value]
     if isinstance(value, dict):
-        return {key: _plain(item) for key, item in value.items()}
+        return {key: plain(item) for key, item in value.items()}
     return value

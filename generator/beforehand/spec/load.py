@@ -9,7 +9,7 @@ from pydantic import ValidationError
 from beforehand.errors import Fault, SpecFault
 from beforehand.spec import availability, places, wording
 from beforehand.spec.canonical import canonical_parts
-from beforehand.spec.checks import faults_across
+from beforehand.spec.checks import findings
 from beforehand.spec.expand import expand
 from beforehand.spec.model import Document
 from beforehand.spec.planned import PlannedFamily, Spec
@@ -17,7 +17,7 @@ from beforehand.spec.planned import PlannedFamily, Spec
 __all__ = ["PlannedFamily", "Spec", "load_spec", "read_spec"]
 
 # Without these nothing can be said about the rest; every other section may be left out or be shorter.
-_NEEDED = ("beforehand", "study", "data", "promise")
+_NEEDED = ("data", "promise")
 
 
 @dataclass(frozen=True)
@@ -78,13 +78,8 @@ def _checked(reading: places.Reading) -> tuple[Document | None, list[Fault]]:
 
 
 def _across(sound: _Sound, where: places.Places) -> list[Fault]:
-    faults = [
-        where.fault(sound.in_file(path), text, at_key=at_key)
-        for path, text, at_key in availability.refusals(sound.document)
-    ]
-    return faults + [
-        where.fault(sound.in_file(path), text) for path, text in faults_across(sound.document, whole=sound.whole)
-    ]
+    found = [*availability.refusals(sound.document), *findings(sound.document, whole=sound.whole)]
+    return [where.fault(sound.in_file(one.path), one.text, at_key=one.at_key) for one in found]
 
 
 def _sound(value: dict[str, Any], unsound: list[places.Path]) -> _Sound | None:
@@ -95,8 +90,13 @@ def _sound(value: dict[str, Any], unsound: list[places.Path]) -> _Sound | None:
     wrong = {path[1] for path in unsound if path[0] == "families" and len(path) > 1}
     kept = tuple(number for number in range(len(value["families"])) if number not in wrong)
     rest = {key: part for key, part in value.items() if key == "families" or key not in sections}
+    if "study" in sections:
+        study = value.get("study")
+        intent = study.get("intent") if isinstance(study, dict) else None
+        rest["study"] = {"title": "?", "identifier": "?", "intent": intent}
+    rest["beforehand"] = 1
     rest["families"] = tuple(value["families"][number] for number in kept)
     try:
-        return _Sound(Document.model_validate(rest), kept, not unsound)
+        return _Sound(Document.model_validate(rest), kept, "families" not in sections)
     except ValidationError:
         return None

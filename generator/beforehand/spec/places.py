@@ -38,6 +38,15 @@ class Places:
 
 
 @dataclass(frozen=True)
+class Finding:
+    """Something that is wrong at a path, before its place in the file is looked up."""
+
+    path: Path
+    text: str
+    at_key: bool = False
+
+
+@dataclass(frozen=True)
 class Reading:
     """A file as plain values (lists are tuples); ``trapped`` are the paths that a fault is already known of."""
 

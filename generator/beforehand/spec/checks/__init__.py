@@ -2,10 +2,37 @@
 
 from collections.abc import Iterator
 
+from beforehand.spec.checks.blocks import blocks_of
+from beforehand.spec.checks.data_sets import check_data_sets
+from beforehand.spec.checks.designs import check_data, check_design
+from beforehand.spec.checks.identifiers import check_answers, check_assumptions, check_ids
+from beforehand.spec.checks.promises import check_levels, check_procedure, check_scheme
+from beforehand.spec.checks.repeats import check_repeats
+from beforehand.spec.checks.sides import check_claim, check_direction, check_null, check_options
 from beforehand.spec.model import Document
-from beforehand.spec.places import Path
+from beforehand.spec.places import Finding
 
 
-def faults_across(document: Document, *, whole: bool) -> Iterator[tuple[Path, str]]:
-    """Find what doesn't fit; ``whole`` is False where unsound families were left out."""
-    yield from ()
+def findings(document: Document, *, whole: bool) -> Iterator[Finding]:
+    """Find what doesn't fit; ``whole`` is False where an unsound part was left out, so that ids may be missing."""
+    yield from check_ids(document)
+    yield from check_data_sets(document)
+    yield from check_levels(document)
+    for number in range(len(document.families)):
+        yield from _family(document, number)
+    if whole:
+        yield from check_scheme(document)
+        yield from check_answers(document)
+        yield from check_assumptions(document)
+
+
+def _family(document: Document, number: int) -> Iterator[Finding]:
+    for block in blocks_of(document, number):
+        yield from check_data(block, document)
+        yield from check_design(block)
+        yield from check_null(block, document)
+        yield from check_direction(block, document)
+        yield from check_claim(block)
+        yield from check_options(block)
+    yield from check_procedure(document, number)
+    yield from check_repeats(document, number)

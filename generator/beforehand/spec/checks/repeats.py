@@ -1,0 +1,42 @@
+"""Whether a family asks the same thing twice: it would count twice in the adjustment."""
+
+from collections.abc import Iterator
+from typing import Any
+
+import rfc8785
+
+from beforehand.spec.canonical import plain
+from beforehand.spec.model import Document, WrittenHypothesis
+from beforehand.spec.places import Finding
+
+# What words and judges a hypothesis, and does not change what is computed.
+_WORDS = (
+    "id", "claim", "claim_direction", "estimand", "margin_basis", "purpose", "reason", "intervals", "truth", "weight",
+)  # fmt: skip
+_MIRRORED = {"above": "below", "below": "above"}
+
+
+def check_repeats(document: Document, number: int) -> Iterator[Finding]:
+    """Check that no two hypotheses of a family mean the same."""
+    family = document.families[number]
+    seen: dict[bytes, str] = {}
+    for place, hypothesis in enumerate(family.hypotheses or ()):
+        first = seen.setdefault(_meaning(hypothesis), hypothesis.id)
+        if first != hypothesis.id:
+            yield Finding(
+                ("families", number, "hypotheses", place),
+                f"hypothesis '{hypothesis.id}' asks what '{first}' asks, and would count twice. Take one of them out.",
+            )
+
+
+def _meaning(hypothesis: WrittenHypothesis) -> bytes:
+    """Write what is computed; first and second swapped with the side mirrored is the same question."""
+    written = {key: value for key, value in plain(hypothesis).items() if key not in _WORDS}
+    for key in ("groups", "outcome"):
+        pair: Any = written.get(key)
+        ordered = isinstance(pair, dict) and "first" in pair
+        if ordered and "null_hypothesis" not in written and pair["first"] > pair["second"]:
+            written[key] = {**pair, "first": pair["second"], "second": pair["first"]}
+            side = str(written.get("alternative"))
+            written["alternative"] = _MIRRORED.get(side, side)
+    return rfc8785.dumps(written)

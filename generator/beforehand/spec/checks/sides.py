@@ -1,0 +1,98 @@
+"""Whether side, margin, direction and claim of a hypothesis say one thing, and say enough."""
+
+import re
+from collections.abc import Iterator
+
+from beforehand.spec.checks.blocks import Block, promise_of
+from beforehand.spec.model import Comparisons, Document, HypothesesFrom
+from beforehand.spec.options import faults_of
+from beforehand.spec.places import Finding
+
+
+def check_null(block: Block, document: Document) -> Iterator[Finding]:
+    """Check the null hypothesis, its side and its margin."""
+    written, form = block.written, block.null.form
+    if form == "at" and written.alternative is None and not block.supplied:
+        yield Finding(
+            block.path, f"{block.name} needs the key 'alternative': above, below or two_sided (of first - second)"
+        )
+    if form != "at" and written.alternative is not None:
+        yield Finding(
+            (*block.path, "alternative"),
+            f"{block.name} has a side twice: '{form}' says it already. Take 'alternative' out.",
+        )
+    if block.test and block.test.scale == "ratio" and min(block.null.margins) <= 0:
+        yield Finding(
+            (*block.path, "null_hypothesis"),
+            f"the margins of {block.name} must be above 0: the test '{block.test.name}' is about a ratio",
+        )
+    if form != "at" and written.margin_basis is None and document.study.intent == "confirmatory":
+        yield Finding(
+            block.path,
+            f"{block.name} needs the key 'margin_basis': why the margin is so wide, and where that is written",
+        )
+    if form == "at" and written.margin_basis is not None:
+        yield Finding((*block.path, "margin_basis"), f"{block.name} has 'margin_basis' and no margin")
+
+
+def check_direction(block: Block, document: Document) -> Iterator[Finding]:
+    """Check that a two-sided test says which side its claim is about, where that decides something."""
+    written, path = block.written, (*block.path, "claim_direction")
+    direction = written.claim_direction
+    if not block.two_sided:
+        if direction is not None:
+            yield Finding(path, f"{block.name} has 'claim_direction', and its test has one side already. Take it out.")
+        return
+    if promise_of(document, block.family).level_is == "one_sided" and direction not in ("above", "below"):
+        yield Finding(
+            block.path if direction is None else path,
+            f"{block.name} is two-sided under a one-sided level. Say claim_direction: above or below, "
+            "so that the p of that side is used, or choose another 'alternative'.",
+        )
+        return
+    because = _must_have_direction(block, document)
+    if direction is None and because:
+        yield Finding(
+            block.path,
+            f"{block.name} is two-sided and {because}: it needs the key 'claim_direction' (above, below or either)",
+        )
+    if direction == "either" and _opens_a_gate(block, document):
+        yield Finding(path, f"{block.name} says claim_direction: either, which can open no gate. Say above or below.")
+
+
+def _must_have_direction(block: Block, document: Document) -> str | None:
+    if document.study.intent == "confirmatory":
+        return "the study is confirmatory"
+    if "success" in block.family.model_fields_set:
+        return "its family has 'success'"
+    return "its family comes before another" if _opens_a_gate(block, document) else None
+
+
+def _opens_a_gate(block: Block, document: Document) -> bool:
+    order = document.promise.order or ()
+    return block.family.id in order[:-1] and block.family.promise is None
+
+
+def check_level_is(block: Block, document: Document) -> bool:
+    """Whether the promise has to say if its level is for one side."""
+    one_sided = block.null.form != "at" or block.written.alternative in ("above", "below")
+    return one_sided and promise_of(document, block.family).level_is is None
+
+
+def check_claim(block: Block) -> Iterator[Finding]:
+    """Check that every name in braces has a meaning."""
+    written = block.written
+    meant = {"feature"} if isinstance(written, HypothesesFrom) else set()
+    if isinstance(written, Comparisons) or written.groups is not None:
+        meant |= {"group", "first", "second"}
+    for word in re.findall(r"\{(group|first|second|feature)\}", written.claim or ""):
+        if word not in meant:
+            yield Finding((*block.path, "claim"), f"the claim of {block.name} has {{{word}}}, which means nothing here")
+
+
+def check_options(block: Block) -> Iterator[Finding]:
+    """Check the options of the test."""
+    if block.test is None:
+        return
+    for name, text in faults_of(block.written.options, block.test, "test"):
+        yield Finding((*block.path, "options", name) if name else block.path, f"{block.name}: {text}")
