@@ -1,0 +1,232 @@
+"""The one place that drops missing values: from a table and a hypothesis to the clean arrays of its test."""
+
+from dataclasses import dataclass
+from typing import Any
+
+import numpy as np
+from numpy.typing import NDArray
+
+from beforehand.data.dataset import Dataset
+from beforehand.data.sets import in_order, rows_of
+from beforehand.data.table import Table
+from beforehand.data.wording import capped, line_list, quoted
+from beforehand.errors import DataFault, Fault
+from beforehand.hypothesis_tests.contract import STATISTICAL_TESTS
+from beforehand.spec.expressions import Column
+from beforehand.spec.model import EventOutcome, Hypothesis, PairOutcome
+
+Positions = NDArray[np.intp]
+
+
+@dataclass(frozen=True, kw_only=True)
+class Samples:
+    """What a test gets, and how it came about."""
+
+    arrays: tuple[NDArray[Any], ...]
+    """As the test takes them: the values; first, second (groups, or pairs in the order of their key); or p, estimate,
+    lower, upper of one row, NaN where one is not supplied. Events are booleans."""
+    n: tuple[int, ...]
+    """Units in each group, first group first; for pairs, the number of pairs."""
+    rows_considered: int
+    """Rows of the analysis set, the condition and the groups, before any is dropped."""
+    missing: tuple[int, ...]
+    """Rows dropped for a missing value, in each group; for pairs, the pairs dropped."""
+
+
+@dataclass(frozen=True, kw_only=True)
+class Unlabelled:
+    """What may be known of a hypothesis before its outcomes meet its groups."""
+
+    sizes: tuple[int, ...]
+    """Units with an outcome in each group; for pairs, the number of complete pairs."""
+    pooled: NDArray[Any]
+    """The outcomes of all groups together, ascending; for pairs, the sizes of the differences from the null value."""
+
+
+@dataclass(frozen=True)
+class _Sides:
+    """The rows of a hypothesis before any is dropped: of one sample, or of first and second."""
+
+    positions: tuple[Positions, ...]
+    columns: tuple[Column, ...]
+    """The column of the outcome on each side."""
+    paired: bool
+    """Whether the sides stand in the same order, a pair at each place."""
+
+    @property
+    def missing(self) -> tuple[NDArray[np.bool_], ...]:
+        gone = [column.missing[rows] for column, rows in zip(self.columns, self.positions, strict=True)]
+        return (gone[0] | gone[1],) * 2 if self.paired else tuple(gone)
+
+    @property
+    def complete(self) -> tuple[NDArray[Any], ...]:
+        sides = zip(self.columns, self.positions, self.missing, strict=True)
+        return tuple(column.values[rows[~gone]] for column, rows, gone in sides)
+
+
+def take(dataset: Dataset, hypothesis: Hypothesis) -> Samples:
+    """Give a hypothesis its samples.
+
+    Raises DataFault where pairs don't match, where units repeat under a test that takes them as independent, and
+    where a value is missing although the hypothesis allows none.
+    """
+    table = dataset.tables[hypothesis.data]
+    if STATISTICAL_TESTS[hypothesis.test].design == "supplied":
+        return _supplied(dataset, table, hypothesis)
+    sides = _sides(table, hypothesis)
+    if hypothesis.missing_values.method == "fail":
+        _refuse_missing(table, sides, hypothesis)
+    groups = slice(1) if sides.paired else slice(None)
+    arrays = sides.complete
+    return Samples(
+        arrays=arrays,
+        n=tuple(array.size for array in arrays[groups]),
+        rows_considered=np.unique(np.concatenate(sides.positions)).size,
+        missing=tuple(int(gone.sum()) for gone in sides.missing[groups]),
+    )
+
+
+def unlabelled(dataset: Dataset, hypothesis: Hypothesis) -> Unlabelled:
+    """Give what `check` may know of a hypothesis; raises the faults of ``take`` that need no outcome.
+
+    Of the outcomes it joins with the groups only whether they are missing, never a value.
+    """
+    if STATISTICAL_TESTS[hypothesis.test].design == "supplied":
+        return Unlabelled(sizes=(), pooled=np.empty(0))
+    sides = _sides(dataset.tables[hypothesis.data], hypothesis)
+    complete = sides.complete
+    if sides.paired:
+        null_value = hypothesis.null_hypothesis.margins[0]
+        differences = np.abs(complete[0] - complete[1] - null_value)
+        return Unlabelled(sizes=(differences.size,), pooled=np.sort(differences))
+    return Unlabelled(sizes=tuple(side.size for side in complete), pooled=np.sort(np.concatenate(complete)))
+
+
+def _sides(table: Table, hypothesis: Hypothesis) -> _Sides:
+    """Find the rows of each side, pairs by their key, and check what the test needs of them."""
+    rows = rows_of(table, hypothesis, what=f"hypothesis '{hypothesis.id}'")
+    outcome, groups = hypothesis.outcome, hypothesis.groups
+    if isinstance(outcome, PairOutcome):
+        here = np.flatnonzero(rows)
+        sides = _Sides((here, here), (table.columns[outcome.first], table.columns[outcome.second]), paired=True)
+    elif groups is None:
+        sides = _Sides((np.flatnonzero(rows),), (_outcome(table, outcome),), paired=False)
+    else:
+        group = table.columns[groups.column]
+        first, second = (
+            np.flatnonzero(rows & (group.values == label) & ~group.missing) for label in (groups.first, groups.second)
+        )
+        if hypothesis.matched_by:
+            first, second = _matched(table, first, second, hypothesis)
+        sides = _Sides((first, second), (_outcome(table, outcome),) * 2, paired=hypothesis.matched_by is not None)
+    if STATISTICAL_TESTS[hypothesis.test].independent_units:
+        _refuse_repeated_units(table, sides, hypothesis)
+    return sides
+
+
+def _outcome(table: Table, outcome: str | EventOutcome | None) -> Column:
+    """Give the column of the outcome; an event whose status is missing is neither yes nor no."""
+    if isinstance(outcome, EventOutcome):
+        status = table.columns[outcome.column]
+        return Column(np.isin(status.values.astype(str), outcome.values), status.missing, "truth")
+    return table.columns[str(outcome)]
+
+
+def _matched(table: Table, first: Positions, second: Positions, hypothesis: Hypothesis) -> tuple[Positions, Positions]:
+    """Bring both sides into the order of the key; each key stands exactly once on each side."""
+    name = str(hypothesis.matched_by)
+    key = table.columns[name]
+    faults = _key_faults(table, key, first, second, hypothesis)
+    if faults:
+        raise DataFault(table.declared.file, capped(faults))
+    by_key = [side[np.argsort(key.values[side], kind="stable")] for side in (first, second)]
+    return by_key[0], by_key[1]
+
+
+def _key_faults(table: Table, key: Column, first: Positions, second: Positions, hypothesis: Hypothesis) -> list[Fault]:
+    """Find rows that have no partner, or more than one: their lines, for a key may be a person's."""
+    told = f"hypothesis '{hypothesis.id}' matches rows by {quoted(str(hypothesis.matched_by))}, and"
+    both = np.concatenate([first, second])
+    lines = in_order(table.lines[both[key.missing[both]]])
+    if lines:
+        return [Fault(lines[0], 0, f"{told} it is missing on {line_list(lines)}.")]
+    faults = []
+    sides = [_by_key(key, side) for side in (first, second)]
+    for side in sides:
+        for rows in side.values():
+            if len(rows) > 1:
+                lines = in_order(table.lines[rows])
+                faults.append(Fault(lines[0], 0, f"{told} the same key stands twice in one group: {line_list(lines)}."))
+    alone = [rows[0] for one, other in (sides, sides[::-1]) for name, rows in one.items() if name not in other]
+    if alone:
+        lines = in_order(table.lines[alone])
+        advice = "Leave out such rows by 'where' or 'exclude', or correct the file."
+        faults.append(Fault(lines[0], 0, f"{told} {line_list(lines)} have no partner in the other group. {advice}"))
+    return faults
+
+
+def _by_key(key: Column, side: Positions) -> dict[Any, list[int]]:
+    rows: dict[Any, list[int]] = {}
+    for position, value in zip(side.tolist(), key.values[side].tolist(), strict=True):
+        rows.setdefault(value, []).append(position)
+    return rows
+
+
+def _refuse_repeated_units(table: Table, sides: _Sides, hypothesis: Hypothesis) -> None:
+    """Refuse a unit that stands in several rows, or in several pairs, of a test that takes each as independent."""
+    names = table.declared.independent_unit
+    if not names:
+        return  # each row is one unit
+    rows = np.concatenate(sides.positions)
+    place = np.tile(np.arange(sides.positions[0].size), 2) if sides.paired else rows
+    _refuse_unknown_units(table, rows, hypothesis)
+    unit = table.units[rows]
+    once = np.unique(np.stack([unit, place]), axis=1)  # a pair may hold its unit twice
+    units, times = np.unique(once[0], return_counts=True)
+    repeated = units[times > 1]
+    if not repeated.size:
+        return
+    lines = in_order(table.lines[np.unique(rows[np.isin(unit, repeated)])])
+    what = "pairs" if sides.paired else "rows"
+    count = "1 unit stands" if repeated.size == 1 else f"{repeated.size:,} units stand"
+    told = (
+        f"hypothesis '{hypothesis.id}': the test '{hypothesis.test}' takes {what} as independent, and {count} in "
+        f"several {what} (independent_unit: [{', '.join(names)}]): {line_list(lines)}. Keep one for each unit by "
+        "'where', or summarise each unit before."
+    )
+    raise DataFault(table.declared.file, [Fault(lines[0], 0, told)])
+
+
+def _refuse_unknown_units(table: Table, rows: Positions, hypothesis: Hypothesis) -> None:
+    names = table.declared.independent_unit or ()
+    unknown = np.any([table.columns[name].missing[rows] for name in names], axis=0)
+    if unknown.any():
+        lines = in_order(table.lines[np.unique(rows[unknown])])
+        told = (
+            f"hypothesis '{hypothesis.id}': independent_unit: [{', '.join(names)}] must name the unit of every "
+            f"row, and is missing on {line_list(lines)}."
+        )
+        raise DataFault(table.declared.file, [Fault(lines[0], 0, told)])
+
+
+def _refuse_missing(table: Table, sides: _Sides, hypothesis: Hypothesis) -> None:
+    sides_gone = zip(sides.columns, sides.positions, strict=True)
+    gone = np.unique(np.concatenate([rows[column.missing[rows]] for column, rows in sides_gone]))
+    if gone.size:
+        lines = in_order(table.lines[gone])
+        told = f"hypothesis '{hypothesis.id}' allows no missing outcome (method: fail); it is missing on"
+        raise DataFault(table.declared.file, [Fault(lines[0], 0, f"{told} {line_list(lines)}.")])
+
+
+def _supplied(dataset: Dataset, table: Table, hypothesis: Hypothesis) -> Samples:
+    """Give the supplied numbers of the row that carries the hypothesis' label."""
+    form = dataset.from_rows[hypothesis.family]
+    row = dataset.rows_by_label[hypothesis.family][str(hypothesis.feature)]
+    names = (form.p, form.estimate, form.lower, form.upper)
+    numbers = [np.array(table.columns[name].values[row] if name else np.nan) for name in names]
+    missing = int(np.isnan(numbers[0]))
+    if missing and hypothesis.missing_values.method == "fail":
+        line = int(table.lines[row])
+        told = f"hypothesis '{hypothesis.id}' allows no missing p-value (method: fail); it is missing on line {line}."
+        raise DataFault(table.declared.file, [Fault(line, 0, told)])
+    return Samples(arrays=tuple(numbers), n=(1 - missing,), rows_considered=1, missing=(missing,))
