@@ -17,7 +17,7 @@ TESTS = (
 )  # fmt: skip
 PROCEDURES_LATER = (
     "all_or_none", "benjamini_yekutieli", "closed_testing", "dunnett", "exceedance_step_down", "fallback",
-    "fixed_sequence", "games_howell", "hochberg", "holm_sidak", "hommel", "local_false_discovery_rate", "max_t",
+    "fixed_sequence", "games_howell", "graph", "hochberg", "holm_sidak", "hommel", "local_false_discovery_rate", "max_t",
     "min_p", "online_false_discovery_rate", "romano_wolf", "scheffe", "sidak", "step_down_dunnett", "storey_q",
     "truncated_hochberg", "truncated_holm", "tukey", "two_stage_adaptive", "weighted_benjamini_hochberg",
     "weighted_bonferroni",
@@ -30,9 +30,9 @@ KEYS: dict[str, frozenset[str]] = {
     "_Promised": frozenset({"false_rejections", "false_share"}),
     "PerHypothesis": frozenset({
         "switch_to_superiority", "strata", "cluster", "random", "covariates", "exposure", "time", "non_detect",
-        "period", "sequence", "subject", "weight", "truth",
+        "period", "sequence", "subject", "modifier", "weight", "truth",
     }),
-    "HypothesesFrom": frozenset({"planned_at_most", "keep"}),
+    "HypothesesFrom": frozenset({"planned_at_most", "keep", "levels_of"}),
     "MissingValues": frozenset({"imputations", "using", "shift"}),
 }  # fmt: skip
 
@@ -94,8 +94,8 @@ def _word(model: BaseModel, key: str, value: Any, path: Path) -> Iterator[Findin
     elif key == "success" and not isinstance(value, str):
         yield Finding(path, "'at_least' for 'success' is not available yet")
     elif key == "test" and value not in STATISTICAL_TESTS:
-        yield Finding(path, f"the test '{value}' is not available yet. There are: {', '.join(STATISTICAL_TESTS)}.")
+        yield Finding(path, f"the test '{value}' is not available yet")
     elif key == "procedure" and value not in PROCEDURES:
-        yield Finding(path, f"the procedure '{value}' is not available yet. There are: {', '.join(PROCEDURES)}.")
+        yield Finding(path, f"the procedure '{value}' is not available yet")
     elif key == "file" and value.endswith(SUFFIXES_LATER):
         yield Finding(path, f"files such as '{value}' are not available yet. Save the table as .csv or .tsv.")

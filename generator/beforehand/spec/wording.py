@@ -90,12 +90,14 @@ def _context(error: ErrorDetails, key: str) -> str:
 def _missing(path: Path, error: ErrorDetails, root: Any) -> str:
     key = error["loc"][-1]
     if isinstance(key, int):
-        return f"{subject(path, root)} must hold one value more"
+        pair = path[:-1] if path[-1:] == (key,) else path
+        return f"{subject(pair, root)} must hold {_COUNTS.get(key + 1, key + 1)} values"
     doc = next(
         (field.description for model in models_at(Document, path) for k, field in fields_of(model).items() if k == key),
         None,
     )
-    return f"{subject(path, root)} needs the key '{key}'. {doc or ''}".rstrip()
+    meaning = f": {doc[0].lower()}{doc[1:].rstrip('.')}" if doc else ""
+    return f"{subject(path, root)} needs the key '{key}'{meaning}"
 
 
 def _unknown(path: Path, root: Any) -> str:

@@ -105,11 +105,13 @@ class HypothesesFrom(PerHypothesis):
     """Many hypotheses of one form: one for each row of supplied p-values, each named column, or each feature."""
 
     each: Name
-    """What makes a hypothesis: the column of labels, the word 'outcome' beside 'outcomes', or 'feature'."""
+    """What makes a hypothesis: the column of labels, the word 'outcome' beside 'outcomes', 'level' beside 'levels_of', or 'feature'."""
     outcomes: Names | None = None
     """The columns that are tested, one hypothesis each."""
     values: Names | None = None
     """The values of these columns that count as the event, in a test of events."""
+    levels_of: Names | None = None
+    """The columns whose levels, taken together, each make a hypothesis about their own rows."""
     groups: Groups | None = None
     """The two groups that are compared."""
     p: Name | None = None

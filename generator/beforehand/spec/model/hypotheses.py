@@ -43,10 +43,9 @@ class PairOutcome(Keys):
 
 
 def _outcome(written: Any) -> str:
-    if isinstance(written, str):
-        return "column"
-    keys = set(written) if isinstance(written, dict) else {"first"} if isinstance(written, PairOutcome) else set()
-    return "pair" if keys & {"first", "second"} else "event"
+    if isinstance(written, dict):
+        return "pair" if set(written) & {"first", "second"} else "event"
+    return "pair" if isinstance(written, PairOutcome) else "event" if isinstance(written, EventOutcome) else "column"
 
 
 ColumnOutcome = Annotated[Name, Tag("column")]
@@ -234,6 +233,8 @@ class PerHypothesis(Keys):
     """The column of the sequence of a cross-over."""
     subject: Name | None = None
     """The column of the subject of a cross-over."""
+    modifier: Groups | None = None
+    """The two groups between which the effect itself is compared, in a test of interaction."""
     intervals: Intervals = Field(default_factory=Intervals)
     """Which intervals are given."""
     estimand: Estimand | None = None
@@ -242,7 +243,7 @@ class PerHypothesis(Keys):
     """Where the margin comes from; required for a margin in a confirmatory study."""
     weight: Weight | None = None
     """The weight in a weighted procedure."""
-    truth: Literal["null", "effect"] | None = None
+    truth: Literal["no_effect", "effect"] | None = None
     """What is known to be true of a control that was put in on purpose."""
     purpose: Purpose | None = None
     """What the outcome is to the study; the family's when not given."""

@@ -91,13 +91,17 @@ def _fraction(written: Any) -> Fraction:
     raise refused("must be a number, or a fraction such as 1/3")
 
 
-def _between(lowest: float, highest: float, words: str) -> AfterValidator:
-    def check(number: Exact) -> Exact:
+def _between(lowest: float, highest: float, words: str) -> BeforeValidator:
+    def check(written: Any) -> Exact:
+        try:
+            number = Exact.of(written)
+        except PydanticCustomError:
+            raise refused(f"must be {words}") from None
         if not lowest < number < highest:
             raise refused(f"must be {words}")
         return number
 
-    return AfterValidator(check)
+    return BeforeValidator(check)
 
 
 def _share(written: Any) -> Any:
