@@ -55,5 +55,33 @@ class CallFault(FaultsFound):
     """The command line, or a call from Python, asks for something that can't be done."""
 
 
-class NoPdf(Exception):
-    """The PDF can't be drawn on this machine; everything else can."""
+@dataclass(frozen=True)
+class Disagreement:
+    """One number that the two computations give differently, beyond what is accepted."""
+
+    about: str
+    quantity: str
+    first: str
+    second: str
+    bound: float
+
+
+class TwoComputationsDisagree(Exception):
+    """The second computation gives other numbers: nothing is published; a defect of beforehand."""
+
+    def __init__(self, disagreements: tuple[Disagreement, ...]) -> None:
+        self.disagreements = disagreements
+        super().__init__(disagreements)
+
+    def __str__(self) -> str:
+        """Name the first few disagreements, and say what that means."""
+        shown = [f"  {d.about}: {d.quantity} {d.first} and {d.second}" for d in self.disagreements[:5]]
+        more = len(self.disagreements) - len(shown)
+        return "\n".join(
+            [
+                "The two computations disagree, so no report was written.",
+                "This is a defect of beforehand: please report it with the folder that holds both numbers.",
+                *shown,
+                *([f"  and {more} more"] if more > 0 else []),
+            ]
+        )

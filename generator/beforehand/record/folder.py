@@ -26,6 +26,8 @@ class Written:
     """Where the earlier report is now."""
     restored: tuple[str, ...] = ()
     """Files that were missing and are back."""
+    no_pdf_because: str = ""
+    """Why there is no report.pdf although one was asked for; "" otherwise."""
 
 
 def read_folder(folder: Path) -> dict[str, bytes]:
@@ -66,13 +68,12 @@ def write_run(folder: Path, files: dict[str, bytes], run: bytes) -> Written:
     return Written(folder, "written", kept)
 
 
-def write_failed(folder: Path, files: dict[str, bytes]) -> None:
-    """Write the folder of a run whose two computations disagree, in place of an earlier one of that name."""
-    if folder.exists():
-        shutil.rmtree(folder)
-    folder.mkdir(parents=True)
-    for name, body in files.items():
-        _write(folder / name, body)
+def write_failed(folder: Path, disagreement: bytes) -> Path:
+    """Write what is left of a run whose two computations disagree: ``OUT.failed/disagreement.json``."""
+    failed = folder.with_name(f"{folder.name}.failed")
+    failed.mkdir(parents=True, exist_ok=True)
+    _write(failed / "disagreement.json", disagreement)
+    return failed
 
 
 def check_target(folder: Path) -> dict[str, bytes]:

@@ -1,0 +1,148 @@
+"""One analysis in a straight line: from a spec and its data to the record."""
+
+from collections.abc import Callable
+
+import numpy as np
+import threadpoolctl  # type: ignore[import-untyped]  # it ships no types
+
+from beforehand.analysis.agreement import P_FLOOR, Agreement, bound_near
+from beforehand.analysis.computed import Computed, compute
+from beforehand.analysis.drawn import drawn
+from beforehand.analysis.families import EnteredFamily, JudgedFamily, judge, scheme_of
+from beforehand.analysis.records import (
+    family_record,
+    hypothesis_records,
+    input_records,
+    method_records,
+    promise_record,
+    results,
+    rows_record,
+    study_record,
+)
+from beforehand.analysis.second import PlainTable, SecondResult, compute_again
+from beforehand.data.dataset import Dataset, with_members
+from beforehand.hypothesis_tests.contract import NotComputed, Outcome
+from beforehand.record.canonical import sha256
+from beforehand.record.manifest import checksum_lines
+from beforehand.record.model import PromiseRecord, Record, Results
+from beforehand.snooping.contract import Evidence
+from beforehand.snooping.warnings import warnings_for
+from beforehand.spec.planned import PlannedFamily, Spec
+
+EVERY = 250
+"""Progress is told after so many hypotheses."""
+STANDARD_ERRORS = 1e-8
+"""Estimates and interval ends are compared down to this share of a standard error."""
+
+
+def analyse(spec: Spec, dataset: Dataset, *, progress: Callable[[str], None] = lambda _: None) -> Record:
+    """Test, adjust, decide, warn; everything computed twice.
+
+    Raises TwoComputationsDisagree when the second computation gives another decision, or numbers over their bound.
+    """
+    spec = with_members(spec, dataset)
+    agreement = Agreement()
+    with threadpoolctl.threadpool_limits(1, user_api="blas"):  # the last bits depend on the number of threads
+        computed, judged = _decide(spec, dataset, agreement, progress)
+        table = results(judged, computed)
+        families = tuple(family_record(one) for one in judged)
+        hypotheses = tuple(
+            words
+            for one in judged
+            for words in hypothesis_records(
+                spec, one.entered.family, tuple(computed[member.id] for member in one.entered.family.members)
+            )
+        )
+        progress("looking for warnings")
+        warned = warnings_for(
+            Evidence(
+                spec=spec,
+                dataset=dataset,
+                families=families,
+                hypotheses=hypotheses,
+                results=table,
+                again=decisions,
+            )
+        )
+    inputs = input_records(spec, dataset)
+    return Record(
+        study=study_record(spec),
+        promise=_study_promise(spec),
+        scheme=scheme_of(spec),
+        inputs=inputs,
+        rows=tuple(rows_record(one) for one in dataset.tables.values()),
+        families=families,
+        hypotheses=hypotheses,
+        warnings=warned.records,
+        unneeded_answers=warned.unneeded_answers,
+        agreement=agreement.settle(),
+        methods=method_records(judged, tuple(computed.values())),
+        drawn=drawn(families, hypotheses, table),
+        plan_sha256=sha256(spec.plan),
+        particulars_sha256=sha256(spec.particulars),
+        data_sha256=sha256(checksum_lines({file.file: file.sha256 for file in inputs})),
+        appendix_rows=spec.document.appendix_rows,
+        results=table,
+    )
+
+
+def _study_promise(spec: Spec) -> PromiseRecord | None:
+    """Give the promise of the families that the study's covers; None where each family keeps its own."""
+    covered = [family for family in spec.families if not family.stands_apart]
+    return promise_record(covered[0].promise) if covered else None
+
+
+def decisions(spec: Spec, dataset: Dataset) -> Results:
+    """Give the table of record of another plan or of other rows: what a warning rule asks for."""
+    spec = with_members(spec, dataset)
+    computed, judged = _decide(spec, dataset, Agreement(), lambda _: None)
+    return results(judged, computed)
+
+
+def _decide(
+    spec: Spec, dataset: Dataset, agreement: Agreement, progress: Callable[[str], None]
+) -> tuple[dict[str, Computed], tuple[JudgedFamily, ...]]:
+    computed: dict[str, Computed] = {}
+    entered = []
+    plain = {name: PlainTable(table) for name, table in dataset.tables.items()}
+    m = sum(len(family.members) for family in spec.families)
+    for family in spec.families:
+        seconds = []
+        for member in family.members:
+            if len(computed) % EVERY == 0:
+                progress(f"testing hypothesis {len(computed) + 1} of {m}, twice")
+            one = compute(family, member, dataset)
+            second = compute_again(family, member, one.test, plain[member.data], one.confidence)
+            _compare(one, second, float(family.promise.level), agreement)
+            computed[member.id] = one
+            seconds.append(second)
+        entered.append(_enter(family, [computed[member.id] for member in family.members], seconds))
+    progress("adjusting and deciding, twice")
+    return computed, judge(spec, tuple(entered), agreement)
+
+
+def _enter(family: PlannedFamily, computed: list[Computed], seconds: list[SecondResult]) -> EnteredFamily:
+    return EnteredFamily(
+        family=family,
+        p=np.array([one.p_entered for one in computed], dtype=np.float64),
+        second_p=tuple(second.p_entered for second in seconds),
+        has_result=np.array([isinstance(one.result, Outcome) for one in computed], dtype=bool),
+        against_claim=np.array([one.side_agrees == "no" for one in computed], dtype=bool),
+    )
+
+
+def _compare(one: Computed, second: SecondResult, level: float, agreement: Agreement) -> None:
+    """Compare the two computations of one hypothesis, number by number."""
+    about, first, again = one.hypothesis.id, one.result, second.result
+    agreement.same(about, "whether there is a result", type(first).__name__, type(again).__name__)
+    agreement.same(about, "analysed units", first.n, again.n)
+    if isinstance(first, NotComputed) or isinstance(again, NotComputed):
+        return
+    agreement.same(about, "side of the claim", one.side_agrees, second.side_agrees)
+    bound = one.test.bound
+    scale = first.standard_error if first.standard_error > 0 else abs(first.upper - first.lower)
+    floor = STANDARD_ERRORS * scale if np.isfinite(scale) else P_FLOOR
+    for name in ("estimate", "lower", "upper"):
+        agreement.numbers(about, name, getattr(first, name), getattr(again, name), bound=bound, floor=floor)
+    for quantity, x, y in (("p", first.p, second.p), ("p as it enters", one.p_entered, second.p_entered)):
+        agreement.numbers(about, quantity, x, y, bound=bound_near(level, x, bound=bound), floor=P_FLOOR)

@@ -1,0 +1,312 @@
+"""From what was read and computed to the parts of the record."""
+
+import math
+from typing import Any
+
+import numpy as np
+
+from beforehand.analysis.computed import Computed
+from beforehand.analysis.families import JudgedFamily
+from beforehand.analysis.wording import alternative_in_words, labels, null_in_words, outcome_name, sides, unit_of
+from beforehand.data.dataset import Dataset
+from beforehand.data.sets import missing_values
+from beforehand.data.table import Table
+from beforehand.hypothesis_tests.contract import NotComputed, Outcome
+from beforehand.hypothesis_tests.nulls import alternative_in_symbols, null_in_symbols
+from beforehand.record.model import (
+    AnalysisSetRecord,
+    ExclusionRecord,
+    FamilyRecord,
+    GroupSummary,
+    HypothesisRecord,
+    InputRecord,
+    MethodRecord,
+    MissingRecord,
+    PromiseRecord,
+    Results,
+    RowsRecord,
+    StudyRecord,
+)
+from beforehand.spec.model import Promise
+from beforehand.spec.planned import PlannedFamily, Spec
+from beforehand.terms import State
+
+MISSING_NUMBER = math.nan
+
+
+def study_record(spec: Spec) -> StudyRecord:
+    """Say what the spec says of the study."""
+    study = spec.study
+    return StudyRecord(
+        title=study.title,
+        identifier=study.identifier,
+        intent=study.intent,
+        prepared_by=study.prepared_by,
+        dated=study.dated or "",
+        protocol=study.protocol or "",
+    )
+
+
+def promise_record(promise: Promise) -> PromiseRecord:
+    """Say what is promised; the level both as a number and as it is written."""
+    return PromiseRecord(
+        criterion=promise.criterion,
+        level=float(promise.level),
+        level_text=str(promise.level.canonical()),
+        level_is=promise.level_is,
+    )
+
+
+def input_records(spec: Spec, dataset: Dataset) -> tuple[InputRecord, ...]:
+    """List every checksummed input."""
+    return tuple(
+        InputRecord(**vars(file), missing_codes=spec.data_set(file.id).missing_codes if file.columns else ())
+        for file in dataset.inputs
+    )
+
+
+def rows_record(table: Table) -> RowsRecord:
+    """Account for the rows of one data set."""
+    declared, flow = table.declared, table.flow
+    return RowsRecord(
+        data=declared.id,
+        one_row_is=declared.one_row_is or "",
+        allocated_by=declared.allocated.by if declared.allocated else "",
+        received=flow.received.rows,
+        received_by_group=flow.received.by_group,
+        exclusions=tuple(
+            ExclusionRecord(
+                where=rule.where,
+                because=rule.because,
+                known_at=rule.known_at,
+                rows=rule.counts.rows,
+                by_group=rule.counts.by_group,
+                undecided=len(rule.undecided),
+            )
+            for rule in flow.exclusions
+        ),
+        analysed=flow.analysed.rows,
+        analysed_by_group=flow.analysed.by_group,
+        missing=tuple(
+            MissingRecord(variable=missing.column, rows=missing.counts.rows, by_group=missing.counts.by_group)
+            for missing in missing_values(table, by_group=True)
+        ),
+        analysis_sets=tuple(
+            AnalysisSetRecord(
+                id=one.id,
+                where=one.where,
+                principle=one.principle,
+                rows=one.counts.rows,
+                by_group=one.counts.by_group,
+            )
+            for one in table.sets
+        ),
+        derived={name: rule.is_ for name, rule in declared.derive.items()},
+    )
+
+
+def family_record(judged: JudgedFamily) -> FamilyRecord:
+    """Say what a family promised, and what came of it."""
+    family, procedure, decision = judged.entered.family, judged.entered.procedure, judged.decision
+    states: dict[State, int] = {}
+    for state in decision.states:
+        states[state] = states.get(state, 0) + 1
+    return FamilyRecord(
+        id=family.id,
+        question=family.question,
+        purpose=family.purpose or "",
+        promise=promise_record(family.promise),
+        under_study_promise=not family.stands_apart,
+        procedure=procedure.name,
+        procedure_title=procedure.title,
+        procedure_options=dict(family.procedure_options),
+        level=judged.entered.level,
+        strong=procedure.strong,
+        valid_under=procedure.valid_under,
+        no_intervals_because=procedure.no_intervals_because,
+        planned=family.planned,
+        computed=int(judged.entered.has_result.sum()),
+        members=tuple(member.id for member in family.members),
+        tested=decision.tested,
+        closed_by=decision.closed_by,
+        states=states,
+    )
+
+
+def hypothesis_records(
+    spec: Spec, family: PlannedFamily, computed: tuple[Computed, ...]
+) -> tuple[HypothesisRecord, ...]:
+    """Put the members of a family into words."""
+    names = labels(family.members, [one.test for one in computed])
+    return tuple(_hypothesis(spec, family, one, label) for one, label in zip(computed, names, strict=True))
+
+
+def _hypothesis(spec: Spec, family: PlannedFamily, computed: Computed, label: str) -> HypothesisRecord:
+    hypothesis, test, result = computed.hypothesis, computed.test, computed.result
+    unit = unit_of(spec, hypothesis, test)
+    pair = sides(hypothesis)
+    missing, basis = hypothesis.missing_values, hypothesis.margin_basis
+    return HypothesisRecord(
+        id=hypothesis.id,
+        family=family.id,
+        label=label,
+        claim=hypothesis.claim or "",
+        null=null_in_symbols(test, computed.null, hypothesis.side),
+        alternative=alternative_in_symbols(test, computed.null, hypothesis.side),
+        null_in_words=null_in_words(hypothesis, test, unit),
+        alternative_in_words=alternative_in_words(hypothesis, test, unit),
+        side=hypothesis.side,
+        claim_direction=hypothesis.claim_direction,
+        null_values=computed.null.values,
+        test=test.name,
+        test_title=test.title,
+        design=test.design,
+        outcome_kind=test.outcome,
+        scale=test.scale,
+        estimates=test.estimates,
+        parameter=test.parameter,
+        statistic_name=test.statistic,
+        outcome=outcome_name(hypothesis),
+        unit=unit,
+        first=pair[0] if pair else "",
+        second=pair[1] if pair else "",
+        data=hypothesis.data,
+        analysis_set=hypothesis.analysis_set or "",
+        where=hypothesis.where or "",
+        missing_method=missing.method,
+        missing_mechanism=missing.mechanism or "",
+        options=dict(hypothesis.options),
+        summaries=_summaries(computed),
+        remarks=result.remarks if isinstance(result, Outcome) else (),
+        no_result_because=result.reason if isinstance(result, NotComputed) else "",
+        origin=(family.from_data.origin or "") if family.from_data else "",
+        margin_basis=f"{basis.text} ({basis.source})" if basis else "",
+        estimand=_estimand(computed),
+        purpose=hypothesis.purpose or family.purpose or "",
+        reason=hypothesis.reason or "",
+    )
+
+
+def _estimand(computed: Computed) -> dict[str, str]:
+    estimand = computed.hypothesis.estimand
+    if estimand is None:
+        return {}
+    events = "; ".join(f"{name}: {how.replace('_', ' ')}" for name, how in estimand.intercurrent.items())
+    parts = {"treatment": estimand.treatment, "population": estimand.population, "variable": estimand.variable}
+    return parts | ({"intercurrent events": events} if events else {}) | {"summary": estimand.summary}
+
+
+def _summaries(computed: Computed) -> tuple[GroupSummary, ...]:
+    """Describe each group by statistics that show no single row."""
+    test, samples = computed.test, computed.samples
+    if test.design == "supplied":
+        return ()
+    names = sides(computed.hypothesis) or ("all",)
+    # a pair that lacks one of its values is missing on both sides
+    gone = samples.missing if len(samples.missing) == len(samples.arrays) else samples.missing * len(samples.arrays)
+    return tuple(
+        _summary(name, values, missing, events=test.outcome == "event")
+        for name, values, missing in zip(names, samples.arrays, gone, strict=True)
+    )
+
+
+def _summary(name: str, values: Any, missing: int, *, events: bool) -> GroupSummary:
+    n = len(values)
+    if events:
+        return GroupSummary(group=name, n=n, missing=missing, events=int(values.sum()))
+    if not n:
+        return GroupSummary(group=name, n=0, missing=missing)
+    lower, median, upper = (float(q) for q in np.quantile(values, [0.25, 0.5, 0.75]))
+    return GroupSummary(
+        group=name,
+        n=n,
+        missing=missing,
+        mean=float(values.mean()),
+        sd=float(values.std(ddof=1)) if n > 1 else None,
+        median=median,
+        lower_quartile=lower,
+        upper_quartile=upper,
+    )
+
+
+def method_records(judged: tuple[JudgedFamily, ...], computed: tuple[Computed, ...]) -> tuple[MethodRecord, ...]:
+    """List the tests and procedures that the run used, each once."""
+    tests = {one.test.name: one.test for one in computed}
+    procedures = {one.entered.procedure.name: one.entered.procedure for one in judged}
+    return tuple(
+        MethodRecord(
+            kind="statistical test",
+            name=name,
+            title=test.title,
+            reference=test.reference,
+            assumes=test.assumptions,
+            p_is=test.p_is,
+            second_route=test.second_route,
+        )
+        for name, test in sorted(tests.items())
+    ) + tuple(
+        MethodRecord(
+            kind="multiplicity procedure",
+            name=name,
+            title=procedure.title,
+            reference=procedure.reference,
+            assumes=(procedure.valid_under,),
+            p_is="",
+            second_route="the adjustment by its definition and the decisions by walking the thresholds, on plain lists",
+        )
+        for name, procedure in sorted(procedures.items())
+    )
+
+
+def results(judged: tuple[JudgedFamily, ...], computed: dict[str, Computed]) -> Results:
+    """Put the table of record together: families in the order of the spec, members in the order of the family."""
+    rows = [
+        _row(one, index, computed[member.id])
+        for one in judged
+        for index, member in enumerate(one.entered.family.members)
+    ]
+    columns = {name: [row[name] for row in rows] for name in rows[0]} if rows else {}
+    return Results(**{name: _column(name, values) for name, values in columns.items()})
+
+
+def _column(name: str, values: list[Any]) -> Any:
+    kind = Results.__annotations__[name]
+    if kind is Results.__annotations__["n"]:
+        return np.array(values, dtype=np.int64)
+    return np.array(values, dtype=np.float64) if kind is Results.__annotations__["p"] else tuple(values)
+
+
+def _row(judged: JudgedFamily, index: int, computed: Computed) -> dict[str, Any]:
+    outcome = computed.result if isinstance(computed.result, Outcome) else None
+    decision, n = judged.decision, computed.result.n
+    pairs = computed.test.design == "pairs"
+    number = dict.fromkeys(("estimate", "lower", "upper", "statistic", "df", "p", "standard_error"), MISSING_NUMBER)
+    if outcome:
+        number = {name: float(getattr(outcome, name)) for name in number}
+    matching = computed.matching if decision.tested else None
+    return {
+        "id": computed.hypothesis.id,
+        "family": judged.entered.family.id,
+        "test": computed.test.name,
+        "n": sum(n),
+        **number,
+        "p_family": float(decision.p_family[index]),
+        "p_study": float(decision.p_study[index]),
+        "threshold": float(decision.threshold[index]),
+        "state": decision.states[index],
+        "decides": decision.decides[index],
+        "side_agrees": computed.side_agrees,
+        "p_entered": computed.p_entered,
+        "entered_as": computed.entered_as,
+        "rank": int(judged.rank[index]),
+        "factor": float(judged.factor[index]),
+        "product": float(judged.product[index]),
+        "from_rank": int(judged.from_rank[index]),
+        "n_first": n[0] if n else 0,
+        "n_second": n[1] if len(n) > 1 and not pairs else 0,
+        "interval_level": computed.confidence if outcome else MISSING_NUMBER,
+        "matching_lower": matching.lower if matching else MISSING_NUMBER,
+        "matching_upper": matching.upper if matching else MISSING_NUMBER,
+        "matching_level": computed.matching_confidence if matching else MISSING_NUMBER,
+        "survives_up_to": int(judged.survives_up_to[index]),
+    }

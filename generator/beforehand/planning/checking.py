@@ -1,0 +1,120 @@
+"""Spec and data checked together, before any test is computed and without joining an outcome with a group."""
+
+from dataclasses import dataclass
+from pathlib import Path
+from typing import Any
+
+from beforehand.data.dataset import Dataset, read_data, with_members
+from beforehand.data.samples import unlabelled
+from beforehand.hypothesis_tests.contract import STATISTICAL_TESTS
+from beforehand.hypothesis_tests.nulls import Null, alternative_in_symbols, null_in_symbols
+from beforehand.multiplicity.contract import PROCEDURES
+from beforehand.multiplicity.decision import is_rejected
+from beforehand.spec.model import Hypothesis
+from beforehand.spec.planned import PlannedFamily, Spec
+
+
+@dataclass(frozen=True, kw_only=True)
+class PlannedHypothesis:
+    """One hypothesis as the spec expands it."""
+
+    id: str
+    family: str
+    test: str
+    null: str
+    alternative: str
+    sizes: tuple[int, ...]
+    """Units with an outcome in each group, or pairs; empty where no data are there yet."""
+    smallest_p: float | None
+    """The smallest p that could enter the procedure with these sizes; None where no data are there yet."""
+    first_threshold: float
+    """The first threshold of its family's procedure: what the smallest p of the family has to meet."""
+
+    @property
+    def can_be_rejected(self) -> bool:
+        """Whether any data of these sizes could reject it."""
+        return self.smallest_p is None or is_rejected(self.smallest_p, self.first_threshold)
+
+
+@dataclass(frozen=True, kw_only=True)
+class Checked:
+    """A sound spec with what it plans, and the rows that it finds."""
+
+    spec: Spec
+    dataset: Dataset | None
+    """None where no data file is there yet."""
+    hypotheses: tuple[PlannedHypothesis, ...]
+
+    @property
+    def out_of_reach(self) -> tuple[PlannedHypothesis, ...]:
+        """The hypotheses that no data of these sizes could reject."""
+        return tuple(hypothesis for hypothesis in self.hypotheses if not hypothesis.can_be_rejected)
+
+    def summary(self) -> dict[str, Any]:
+        """Give it as plain values."""
+        return {
+            "plan": self.spec.plan_checksum,
+            "families": [
+                {"id": f.id, "procedure": f.procedure, "planned": f.planned, "members": [h.id for h in f.members]}
+                for f in self.spec.families
+            ],
+            "hypotheses": [vars(hypothesis) for hypothesis in self.hypotheses],
+            "rows": {name: rows_of(self.dataset, name) for name in self.dataset.tables} if self.dataset else None,
+        }
+
+
+def check(spec: Spec, *, data_root: Path | None = None) -> Checked:
+    """Check a spec with its data; where none of its files is there yet, the spec alone."""
+    if not any((base / one.file).exists() for base in (spec.folder, data_root) if base for one in spec.data):
+        return Checked(spec=spec, dataset=None, hypotheses=_planned(spec, None))
+    dataset = read_data(spec, data_root=data_root)
+    whole = with_members(spec, dataset)
+    return Checked(spec=whole, dataset=dataset, hypotheses=_planned(whole, dataset))
+
+
+def rows_of(dataset: Dataset, name: str) -> dict[str, Any]:
+    """Give the row accounting of one data set as plain values."""
+    flow = dataset.tables[name].flow
+    return {
+        "received": flow.received.rows,
+        "excluded": [{"because": rule.because, "rows": rule.counts.rows} for rule in flow.exclusions],
+        "analysed": flow.analysed.rows,
+        "analysed_by_group": flow.analysed.by_group,
+    }
+
+
+def _planned(spec: Spec, dataset: Dataset | None) -> tuple[PlannedHypothesis, ...]:
+    return tuple(_one(family, member, dataset) for family in spec.families for member in family.members)
+
+
+def _one(family: PlannedFamily, hypothesis: Hypothesis, dataset: Dataset | None) -> PlannedHypothesis:
+    test, written = STATISTICAL_TESTS[hypothesis.test], hypothesis.null_hypothesis
+    null = Null(written.form, tuple(float(margin) for margin in written.margins))
+    known = unlabelled(dataset, hypothesis) if dataset else None
+    smallest = None
+    if known and known.sizes:
+        smallest = test.smallest_p(known.sizes, known.pooled, alternative=hypothesis.side)
+        one_sided = hypothesis.side != "two_sided" or written.form == "outside"
+        smallest = min(1.0, smallest * _reading(family, one_sided=one_sided))
+    # the member with the smallest p of its family, the others at p = 1: the first step of any procedure
+    steps = PROCEDURES[family.procedure].steps([0.0] + [1.0] * (family.planned - 1), **family.procedure_options)
+    return PlannedHypothesis(
+        id=hypothesis.id,
+        family=family.id,
+        test=hypothesis.test,
+        null=null_in_symbols(test, null, hypothesis.side),
+        alternative=alternative_in_symbols(test, null, hypothesis.side),
+        sizes=known.sizes if known else (),
+        smallest_p=smallest,
+        first_threshold=float(family.promise.level) / float(steps.factor[0]),
+    )
+
+
+def _reading(family: PlannedFamily, *, one_sided: bool) -> float:
+    """Give by how much a p is multiplied when its level is read: twice, half, or not at all."""
+    match (family.promise.level_is, one_sided):
+        case ("two_sided", True):
+            return 2.0
+        case ("one_sided", False):
+            return 0.5
+    return 1.0
