@@ -1,6 +1,6 @@
 """From the file to the Spec: read, check key by key, check across keys, expand; all faults at once."""
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from pathlib import Path
 from typing import Any
 
@@ -16,8 +16,9 @@ from beforehand.spec.planned import PlannedFamily, Spec
 
 __all__ = ["PlannedFamily", "Spec", "load_spec", "read_spec"]
 
-# Without these nothing can be said about the rest; every other section may be left out or be shorter.
-_NEEDED = ("data", "promise")
+# What stands in for a section that is unsound, so that the rest can be checked; what rests on it isn't.
+_PROMISE = {"criterion": "familywise_error_rate", "level": 0.05}
+_STUDY = {"title": "?", "identifier": "?"}
 
 
 @dataclass(frozen=True)
@@ -26,7 +27,8 @@ class _Sound:
 
     document: Document
     families: tuple[int, ...]
-    whole: bool
+    all_families: bool
+    promise: bool
 
     def in_file(self, path: places.Path) -> places.Path:
         if path[:1] == ("families",) and len(path) > 1:
@@ -49,15 +51,20 @@ def read_spec(source: bytes, path: Path) -> Spec:
     try:
         reading = places.read(source)
     except places.NotYaml as fault:
-        raise SpecFault(path.name, fault.faults) from None
+        raise SpecFault(path.name, [_whole(one) for one in fault.faults]) from None
     if not isinstance(reading.value, dict) or not reading.value:
         raise SpecFault(path.name, "this is no spec: it has no keys. `beforehand draft` writes one to begin with.")
     document, faults = _checked(reading)
     if document is None:
-        raise SpecFault(path.name, faults)
+        raise SpecFault(path.name, [_whole(fault) for fault in faults])
     families = expand(document)
     plan, particulars = canonical_parts(document, families)
     return Spec(path, source, document, families, plan, particulars, reading.places)
+
+
+def _whole(fault: Fault) -> Fault:
+    """End the message as a sentence ends."""
+    return fault if fault.text.endswith(".") else replace(fault, text=f"{fault.text}.")
 
 
 def _checked(reading: places.Reading) -> tuple[Document | None, list[Fault]]:
@@ -78,14 +85,15 @@ def _checked(reading: places.Reading) -> tuple[Document | None, list[Fault]]:
 
 
 def _across(sound: _Sound, where: places.Places) -> list[Fault]:
-    found = [*availability.refusals(sound.document), *findings(sound.document, whole=sound.whole)]
+    across = findings(sound.document, families=sound.all_families, promise=sound.promise)
+    found = [*availability.refusals(sound.document), *across]
     return [where.fault(sound.in_file(one.path), one.text, at_key=one.at_key) for one in found]
 
 
 def _sound(value: dict[str, Any], unsound: list[places.Path]) -> _Sound | None:
     """Leave out the sections and families in which something is wrong; None where too little is left."""
     sections = {path[0] for path in unsound if path}
-    if () in unsound or sections.intersection(_NEEDED) or not isinstance(value.get("families"), tuple):
+    if () in unsound or "data" in sections or not isinstance(value.get("families"), tuple):
         return None
     wrong = {path[1] for path in unsound if path[0] == "families" and len(path) > 1}
     kept = tuple(number for number in range(len(value["families"])) if number not in wrong)
@@ -93,10 +101,15 @@ def _sound(value: dict[str, Any], unsound: list[places.Path]) -> _Sound | None:
     if "study" in sections:
         study = value.get("study")
         intent = study.get("intent") if isinstance(study, dict) else None
-        rest["study"] = {"title": "?", "identifier": "?", "intent": intent}
-    rest["beforehand"] = 1
+        rest["study"] = {**_STUDY, "intent": intent}
+    rest = {"beforehand": 1, "promise": _PROMISE, **rest}
     rest["families"] = tuple(value["families"][number] for number in kept)
     try:
-        return _Sound(Document.model_validate(rest), kept, "families" not in sections)
+        return _Sound(
+            Document.model_validate(rest),
+            kept,
+            "families" not in sections,
+            "promise" in value and "promise" not in sections,
+        )
     except ValidationError:
         return None

@@ -142,7 +142,7 @@ class _Builder:
         elif isinstance(event, (yaml.ScalarEvent, yaml.MappingStartEvent, yaml.SequenceStartEvent)):
             self._refuse_marks(event, mark)
             if isinstance(event, yaml.ScalarEvent):
-                self._scalar(event, mark)
+                self._scalar(event, mark, tagged=event.tag is not None)
             else:
                 self._begin(event, mark)
         elif isinstance(event, (yaml.MappingEndEvent, yaml.SequenceEndEvent)):
@@ -230,7 +230,7 @@ class _Builder:
         elif not str(last).startswith(_AGAIN):
             parent[str(last)] = items
 
-    def _scalar(self, event: Any, mark: tuple[int, int]) -> None:
+    def _scalar(self, event: Any, mark: tuple[int, int], *, tagged: bool) -> None:
         plain = not event.style
         if self._wants_key():
             self._key(event.value, mark, plain=plain)
@@ -242,7 +242,7 @@ class _Builder:
         scalar = scalars.resolve(event.value) if plain else scalars.text(event.value)
         if scalar.fault:
             self._fault(mark, scalar.fault)
-        self._place(scalar.value, mark, trapped=bool(scalar.fault))
+        self._place(scalar.value, mark, trapped=tagged or bool(scalar.fault))
 
     def _key(self, text: str, mark: tuple[int, int], *, plain: bool) -> None:
         top = self._open[-1]
@@ -275,8 +275,13 @@ class _Builder:
         for key in closed.empty:
             mark = self._keys[(*closed.path, key)]
             name = key if not key.startswith(_AGAIN) else "again"
-            hint = " Write a space after the colon." if ":" in name and closed.braces else ""
-            self._fault(mark, f"the key '{name}' has no value.{hint or ' Write one, or leave the key out.'}")
+            self._fault(mark, f"the key '{name}' has no value. {_for_empty(name, braces=closed.braces)}")
+
+
+def _for_empty(name: str, *, braces: bool) -> str:
+    if braces and ":" in name:
+        return "Write a space after the colon."
+    return "A text with a comma inside { } stands in quotes." if braces else "Write one, or leave the key out."
 
 
 def _cut_expression(value: Any, keys: list[str], empty: list[str]) -> str | None:

@@ -106,11 +106,11 @@ def syntax(  # noqa: PLR0911 -- one sentence for each kind of fault
         return "a tab stands here. YAML wants spaces at the beginning of a line."
     if "flow mapping" in context:
         return (
-            "a list of keys in { } is broken here: a comma or } is missing. "
+            "a list of keys in { } is broken here: a comma or } is missing, or a quote is not closed. "
             "An expression with brackets or commas inside { } stands in quotes, or on a line of its own."
         )
     if "flow sequence" in context or "flow node" in context:
-        return "a list in [ ] is broken here: a value, a comma or ] is missing"
+        return "a list in [ ] is broken here: a value, a comma or ] is missing, or a quote is not closed"
     if "cannot start any token" in problem:
         return f"text that begins with {character} stands in quotes"
     if "mapping values are not allowed" in problem:
@@ -119,6 +119,8 @@ def syntax(  # noqa: PLR0911 -- one sentence for each kind of fault
         return "a quote is opened and never closed"
     if "escape" in problem or "hexdecimal" in problem:
         return "this escape has no meaning. Write the letter itself, or use single quotes."
+    if "comment or line break" in problem or "sequence entries" in problem:
+        return "text with > or - or quotes in it stands in quotes as a whole"
     if "expected key" in problem or "block collection" in context or "expected ':'" in problem:
         return (
             "this line doesn't fit the lines around it: an indentation, a colon or a dash is wrong, "

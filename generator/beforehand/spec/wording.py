@@ -13,7 +13,8 @@ from beforehand.spec.model.walk import fields_of, models_at
 from beforehand.spec.naming import found, owner, subject, value_at
 from beforehand.spec.places import Path, Places, Reading
 
-_COUNTS = {1: "one", 2: "two", 3: "three"}
+_COUNTS = {0: "none", 1: "one", 2: "two", 3: "three"}
+_OURS = ("refused", "told", "sentence")
 
 
 def faults_of(errors: list[ErrorDetails], reading: Reading) -> list[tuple[Path, Fault]]:
@@ -22,13 +23,24 @@ def faults_of(errors: list[ErrorDetails], reading: Reading) -> list[tuple[Path, 
     for error in errors:
         path = place(error["loc"], reading.places)
         # A trapped word keeps its own fault; what is missing or unknown there is only its consequence.
-        if not any(path[:length] in reading.trapped for length in range(len(path) + 1)):
+        trapped = any(path[:length] in reading.trapped for length in range(len(path) + 1))
+        if not trapped and not _is_echo(error, value_at(path, reading.value)):
             at[path].append(error)
     return [
-        (path, _fault(path, error, reading))
+        (_wrong(path, error), _fault(path, error, reading))
         for path, found_there in at.items()
         for error in _worth_saying(path, found_there, list(at))
     ]
+
+
+def _wrong(path: Path, error: ErrorDetails) -> Path:
+    """Give the path of what is wrong: of a missing key, the path where it would stand."""
+    return (*path, error["loc"][-1]) if error["type"] == "missing" else path
+
+
+def _is_echo(error: ErrorDetails, value: Any) -> bool:
+    """Whether a list is called too short only because its entries are faulty, which is said already."""
+    return error["type"] == "too_short" and len(value) >= error["ctx"]["min_length"]
 
 
 def place(loc: tuple[int | str, ...], places: Places) -> Path:
@@ -49,8 +61,8 @@ def _worth_saying(path: Path, errors: list[ErrorDetails], paths: list[Path]) -> 
     inner = any(len(other) > len(path) and other[: len(path)] == path for other in paths)
     if missing or inner:
         # The block itself has the right shape for one alternative, and what is wrong lies in it.
-        return [*missing, *[error for error in others if error["type"] in ("refused", "sentence")]]
-    spoken = [error for error in others if error["type"] in ("refused", "sentence")]
+        return [*missing, *[error for error in others if error["type"] in _OURS]]
+    spoken = [error for error in others if error["type"] in _OURS]
     return spoken[:1] or [_joined(others)]
 
 
@@ -76,11 +88,11 @@ def _fault(path: Path, error: ErrorDetails, reading: Reading) -> Fault:
     named = subject(path, root)
     if error["loc"] and error["loc"][-1] == "[key]":
         return reading.places.fault(path, f"the key '{path[-1]}': {_context(error, 'text')}", at_key=True)
-    wanted = _context(error, "text") if kind == "refused" else f"must be {_expected(error)}"
-    if isinstance(value, (dict, tuple)) and kind == "refused":
-        return reading.places.fault(path, f"{named} {wanted}", at_key=bool(path))
-    hint = _hint(error, value)
-    return reading.places.fault(path, f"{named} {wanted}; found {found(value)}.{hint}")
+    wanted = _context(error, "text") if kind in _OURS else f"must be {_expected(error)}"
+    if kind == "told" or (isinstance(value, (dict, tuple)) and kind == "refused"):
+        return reading.places.fault(path, f"{named} {wanted}", at_key=kind == "refused")
+    shown = _COUNTS.get(len(value), f"{len(value)}") if kind in ("too_short", "too_long") else found(value)
+    return reading.places.fault(path, f"{named} {wanted}; found {shown}.{_hint(error, value)}")
 
 
 def _context(error: ErrorDetails, key: str) -> str:
@@ -163,10 +175,13 @@ def _hint(error: ErrorDetails, value: Any) -> str:
     """Say what to write instead, where that is plain from what was found."""
     if isinstance(value, str) and re.fullmatch(r"\d+(\.\d+)? ?%", value):
         return f" Write {float(value.rstrip(' %')) / 100:g}."
-    if error["type"] in ("float_type", "int_type") and isinstance(value, str) and _is_number(value):
+    numeric = error["type"] in ("float_type", "int_type") or "number" in _context(error, "text")
+    if numeric and isinstance(value, str) and _is_number(value):
         return " Take the quotes away."
     if error["type"] == "string_type" and isinstance(value, (int, float)):
         return f' Put quotes around it: "{found(value)}".'
+    if error["type"] == "string_type" and isinstance(value, tuple) and len(value) == 1:
+        return f" Write {value[0]}."
     if error["type"] == "tuple_type" and isinstance(value, (str, int, float)):
         return f" Write [{value}]."
     words = _literals(error) if error["type"] == "literal_error" else []

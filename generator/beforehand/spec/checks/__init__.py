@@ -13,26 +13,34 @@ from beforehand.spec.model import Document
 from beforehand.spec.places import Finding
 
 
-def findings(document: Document, *, whole: bool) -> Iterator[Finding]:
-    """Find what doesn't fit; ``whole`` is False where an unsound part was left out, so that ids may be missing."""
+def findings(document: Document, *, families: bool, promise: bool) -> Iterator[Finding]:
+    """Find what doesn't fit; the flags say whether all families, and the promise, are there as they are written."""
     yield from check_ids(document)
     yield from check_data_sets(document)
-    yield from check_levels(document)
     for number in range(len(document.families)):
-        yield from _family(document, number)
-    if whole:
+        yield from _within(document, number)
+        if promise:
+            yield from _under_promise(document, number)
+    if promise:
+        yield from check_levels(document)
+    if families and promise:
         yield from check_scheme(document)
+    if families:
         yield from check_answers(document)
         yield from check_assumptions(document)
 
 
-def _family(document: Document, number: int) -> Iterator[Finding]:
+def _within(document: Document, number: int) -> Iterator[Finding]:
     for block in blocks_of(document, number):
         yield from check_data(block, document)
         yield from check_design(block)
         yield from check_null(block, document)
-        yield from check_direction(block, document)
         yield from check_claim(block)
         yield from check_options(block)
-    yield from check_procedure(document, number)
     yield from check_repeats(document, number)
+
+
+def _under_promise(document: Document, number: int) -> Iterator[Finding]:
+    for block in blocks_of(document, number):
+        yield from check_direction(block, document)
+    yield from check_procedure(document, number)

@@ -53,7 +53,8 @@ class Block:
     def two_sided(self) -> bool:
         """Whether the test can reject on either side of what it claims."""
         return self.null.form == "inside" or (
-            self.null.form == "at" and self.written.alternative in ("two_sided", None)
+            self.null.form == "at"
+            and (self.written.alternative == "two_sided" or (self.supplied and self.written.alternative is None))
         )
 
 

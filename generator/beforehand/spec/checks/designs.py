@@ -148,6 +148,8 @@ def _outcomes(block: Block) -> Iterator[Finding]:
     elif isinstance(written.outcome, EventOutcome):
         yield from _outcome(block, written.outcome.column, written.outcome.values, path, "outcome")
     elif isinstance(written.outcome, PairOutcome):
+        if block.test is None or block.test.design != "pairs":
+            return
         for key in ("first", "second"):
             yield from _outcome(block, getattr(written.outcome, key), None, (*path, key), "outcome")
         if written.outcome.first == written.outcome.second:

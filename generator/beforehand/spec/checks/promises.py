@@ -79,8 +79,8 @@ def check_levels(document: Document) -> Iterator[Finding]:
     """Check that a promise says whose level it is as soon as a test has a side."""
     for number, family in enumerate(document.families):
         sided = [block for block in blocks_of(document, number) if check_level_is(block, document)]
-        if sided:
-            own = family.promise is not None
+        own = family.promise is not None
+        if sided and (own or document.promise.across_families != "separate"):
             path: Path = ("families", number, "promise") if own else ("promise",)
             name = f"the promise of family '{family.id}'" if own else "the promise"
             yield Finding(
@@ -109,7 +109,8 @@ def check_procedure(document: Document, number: int) -> Iterator[Finding]:
             f"{CRITERION_WORDS[procedure.controls]}. It is kept by: {', '.join(keeping)}.",
         )
     for name, text in faults_of(family.procedure_options, procedure, "procedure"):
-        yield Finding((*path, "procedure_options", name) if name else path, f"family '{family.id}': {text}")
+        at = (*path, "procedure_options", name) if name else path
+        yield Finding(at, f"family '{family.id}': {text}", at_key=True)
 
 
 def _count(document: Document, family: Family) -> int | None:

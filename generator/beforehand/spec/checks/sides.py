@@ -95,4 +95,5 @@ def check_options(block: Block) -> Iterator[Finding]:
     if block.test is None:
         return
     for name, text in faults_of(block.written.options, block.test, "test"):
-        yield Finding((*block.path, "options", name) if name else block.path, f"{block.name}: {text}")
+        at = (*block.path, "options", name) if name else block.path
+        yield Finding(at, f"{block.name}: {text}", at_key=True)

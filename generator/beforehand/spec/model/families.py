@@ -105,7 +105,7 @@ class HypothesesFrom(PerHypothesis):
     """Many hypotheses of one form: one for each row of supplied p-values, each named column, or each feature."""
 
     each: Name
-    """What makes a hypothesis: the column of labels, the word 'outcome' beside 'outcomes', 'level' beside 'levels_of', or 'feature'."""
+    """What makes a hypothesis: the column of labels, or a word: outcome (beside 'outcomes'), level, feature."""
     outcomes: Names | None = None
     """The columns that are tested, one hypothesis each."""
     values: Names | None = None

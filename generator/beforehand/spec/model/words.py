@@ -52,6 +52,11 @@ def sentence(text: str) -> PydanticCustomError:
     return PydanticCustomError("sentence", "{text}", {"text": text})
 
 
+def told(text: str) -> PydanticCustomError:
+    """Make a fault that needs only the name of its place before it."""
+    return PydanticCustomError("told", "{text}", {"text": text})
+
+
 class Exact(float):
     """A level, weight or share: a float that keeps the fraction it was written as."""
 
@@ -145,7 +150,7 @@ def _expression(text: str) -> str:
     try:
         parse(one_line)
     except ExpressionFault as fault:
-        raise refused(f"can't be read: {fault.text}") from None
+        raise told(f"can't be read: {fault.text}") from None
     return one_line
 
 
