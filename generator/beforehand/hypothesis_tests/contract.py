@@ -4,7 +4,7 @@ import inspect
 import math
 from collections.abc import Callable
 from dataclasses import dataclass, field
-from typing import Any, Generic, ParamSpec
+from typing import Any, Generic, ParamSpec, cast
 
 import numpy as np
 from numpy.typing import NDArray
@@ -17,6 +17,9 @@ P = ParamSpec("P")
 
 # Every test has these keyword-only parameters; what else its signature holds are its options.
 COMMON = ("null_value", "alternative", "confidence")
+
+# Sums and differences of up to a hundred million values below this still fit in a double.
+LARGEST = 1e300
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -79,6 +82,8 @@ class StatisticalTest(Generic[P]):
     reference: str
     independent_units: bool
     """Whether the test assumes that every row is an independent unit."""
+    interval_inverts_p: bool
+    """Whether the interval holds exactly the null values that the two-sided test, as it is by default, keeps."""
     compute: Callable[P, Result] = field(repr=False)
 
     @property
@@ -98,24 +103,77 @@ class StatisticalTest(Generic[P]):
         return {p.name: p for p in parameters if p.kind is p.KEYWORD_ONLY and p.name not in COMMON}
 
     def __call__(self, *samples: P.args, **settings: P.kwargs) -> Result:
-        """Run the test on clean arrays: no missing values, the units of one group in one array."""
-        return self.compute(*samples, **settings)
+        """Run the test on clean arrays: no missing values, the units of one group in one array.
+
+        Raises
+        ------
+        ValueError
+            When a sample is not one-dimensional, holds a missing value, or holds anything but no and yes where the
+            outcome is an event; when the two sides of pairs differ in length; when a setting is not one of its words.
+        """
+        arrays = self._checked(samples)
+        return self._too_large(arrays) or cast(Callable[..., Result], self.compute)(*arrays, **settings)
 
     def again(self, *samples: Any, **settings: Any) -> Result:
         """Run the second route, the function ``second_route`` in the entry's file, with the same call."""
-        result: Result = STATISTICAL_TESTS.module(self.name).second_route(*samples, **settings)
-        return result
+        arrays = self._checked(samples)
+        second: Callable[..., Result] = STATISTICAL_TESTS.module(self.name).second_route
+        return self._too_large(arrays) or second(*arrays, **settings)
 
-    def smallest_p(self, sizes: tuple[int, ...], pooled: Values | None, *, alternative: Alternative) -> float:
+    def _checked(self, samples: tuple[Any, ...]) -> tuple[Any, ...]:
+        """Turn samples into arrays of the kind the test takes; what it takes from elsewhere passes as it is."""
+        if self.outcome == "supplied":
+            return samples
+        arrays = tuple(one_sample(sample, self.outcome) for sample in samples)
+        if self.design == "pairs" and len({array.size for array in arrays}) > 1:
+            raise ValueError(f"pairs have two values each; found {' and '.join(str(a.size) for a in arrays)} values")
+        return arrays
+
+    def _too_large(self, arrays: tuple[Any, ...]) -> NotComputed | None:
+        """Refuse samples with values that are infinite, or so large that sums of them are."""
+        if self.outcome != "number" or all((np.abs(array) < LARGEST).all() for array in arrays):
+            return None
+        sizes = tuple(array.size for array in arrays)
+        reason = "a value is infinite or too large to compute with"
+        return NotComputed(reason, sizes[:1] if self.design == "pairs" else sizes)
+
+    def smallest_p(
+        self, sizes: tuple[int, ...], pooled: NDArray[Any] | None, *, alternative: Alternative, **options: Any
+    ) -> float:
         """Give the smallest p that this test could reach with groups of these sizes.
 
-        ``pooled`` are the outcomes of all groups together, unlabelled, or None when no data were read.
         A test whose p can come arbitrarily near to 0 has no function ``smallest_p`` in its file, and gives 0.
+
+        Parameters
+        ----------
+        sizes : tuple of int
+            Units per group; for pairs, the number of pairs.
+        pooled : ndarray or None
+            The outcomes of all groups together, unlabelled (for pairs: the absolute differences from the null value),
+            or None when no data were read.
+        alternative : {"above", "below", "two_sided"}
+            The side asked for.
+        **options
+            The test's own options, as in a call.
         """
         module = STATISTICAL_TESTS.module(self.name)
         if not hasattr(module, "smallest_p"):
             return 0.0
-        return float(module.smallest_p(sizes, pooled, alternative=alternative))
+        return float(module.smallest_p(sizes, pooled, alternative=alternative, **options))
+
+
+def one_sample(sample: Any, outcome: OutcomeKind) -> NDArray[Any]:
+    """Turn one sample into an array: doubles for a number, booleans for an event."""
+    values = np.asarray(sample, dtype=np.float64)
+    if values.ndim != 1:
+        raise ValueError(f"a sample is a one-dimensional array; found {values.ndim} dimensions")
+    if np.isnan(values).any():
+        raise ValueError("a sample holds no missing value: rows without an outcome are left out, and counted, before")
+    if outcome == "number":
+        return values
+    if not np.isin(values, (0, 1)).all():
+        raise ValueError("an event has happened or has not: each value is True or False")
+    return values.astype(np.bool_)
 
 
 def statistical_test(
@@ -134,6 +192,7 @@ def statistical_test(
     bound: float,
     reference: str,
     independent_units: bool = True,
+    interval_inverts_p: bool = True,
 ) -> Callable[[Callable[P, Result]], StatisticalTest[P]]:
     """Enter a function in the catalogue of statistical tests with what it declares."""
 
@@ -141,7 +200,8 @@ def statistical_test(
         return StatisticalTest(
             title=title, design=design, outcome=outcome, scale=scale, estimates=estimates, parameter=parameter,
             statistic=statistic, p_is=p_is, null=null, assumptions=assumptions, second_route=second_route,
-            bound=bound, reference=reference, independent_units=independent_units, compute=compute,
+            bound=bound, reference=reference, independent_units=independent_units,
+            interval_inverts_p=interval_inverts_p, compute=compute,
         )  # fmt: skip
 
     return enter
