@@ -27,6 +27,9 @@ State = Literal[
     "continue",
 ]
 
+# How the p that enters a procedure follows from the p of the test.
+EnteredAs = Literal["as it is", "doubled", "claim side", "no result"]
+
 Severity = Literal["objection", "caution", "note"]
 Scope = Literal["hypothesis", "family", "study"]
 EvidenceFrom = Literal["record", "pattern"]

@@ -12,7 +12,7 @@ from beforehand.hypothesis_tests.nulls import Null, judge_null
 from beforehand.multiplicity.contract import PROCEDURES
 from beforehand.spec.model import Hypothesis
 from beforehand.spec.planned import PlannedFamily
-from beforehand.terms import Alternative
+from beforehand.terms import Alternative, EnteredAs
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -24,8 +24,7 @@ class Computed:
     samples: Samples
     result: Result
     p_entered: float
-    entered_as: str
-    """How p_entered follows from p: "as it is", "doubled", "claim side" or "no result"."""
+    entered_as: EnteredAs
     side_agrees: str
     """Whether the estimate lies on the side of the claim: yes, no, or "" where the claim has no side."""
     confidence: float
@@ -97,16 +96,17 @@ class _Asked:
         return result.p if isinstance(result, Outcome) else 1.0
 
 
-def _entered(asked: _Asked, result: Result, reading: Reading) -> tuple[float, str]:
+def _entered(asked: _Asked, result: Result, reading: Reading) -> tuple[float, EnteredAs]:
     """Give the p that enters the procedure, and how it follows from p."""
     if isinstance(result, NotComputed):
         return 1.0, "no result"
-    if asked.one_sided and reading.level_is == "two_sided":
-        return min(1.0, 2 * result.p), "doubled"
     direction = asked.hypothesis.claim_direction
-    if not asked.one_sided and reading.level_is == "one_sided" and direction in ("above", "below"):
-        return asked.one_sided_p(direction), "claim side"
-    return result.p, "as it is"
+    how = reading.how_p_enters(one_sided=asked.one_sided, direction=direction)
+    if how == "doubled":
+        return min(1.0, 2 * result.p), how
+    if how == "claim side" and direction in ("above", "below"):
+        return asked.one_sided_p(direction), how
+    return result.p, how
 
 
 def _side_agrees(asked: _Asked) -> str:

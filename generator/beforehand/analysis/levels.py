@@ -2,7 +2,7 @@
 
 from dataclasses import dataclass
 
-from beforehand.terms import LevelIs
+from beforehand.terms import ClaimDirection, EnteredAs, LevelIs
 
 
 @dataclass(frozen=True)
@@ -24,14 +24,14 @@ class Reading:
         """
         return 1 - 2 * self.per_side / shared_by
 
-    def enters(self, p: float, *, one_sided: bool, on_claim_side: float | None) -> float:
-        """Give the p-value that enters the procedure.
+    def how_p_enters(self, *, one_sided: bool, direction: ClaimDirection | None) -> EnteredAs:
+        """Say how the p of a test enters the procedure.
 
-        A one-sided p is doubled before it meets a two-sided level; a two-sided test meets a one-sided level with the
-        one-sided p of its claim, ``on_claim_side``.
+        A one-sided p is doubled before it meets a level that both sides share; a two-sided test meets a level of one
+        side with the p of the side that its claim is about.
         """
         if one_sided and self.level_is == "two_sided":
-            return min(1.0, 2 * p)
-        if not one_sided and self.level_is == "one_sided" and on_claim_side is not None:
-            return on_claim_side
-        return p
+            return "doubled"
+        if not one_sided and self.level_is == "one_sided" and direction in ("above", "below"):
+            return "claim side"
+        return "as it is"

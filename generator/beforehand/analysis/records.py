@@ -13,6 +13,7 @@ from beforehand.data.sets import missing_values
 from beforehand.data.table import Table
 from beforehand.hypothesis_tests.contract import NotComputed, Outcome
 from beforehand.hypothesis_tests.nulls import alternative_in_symbols, null_in_symbols
+from beforehand.record.canonical import results_column
 from beforehand.record.model import (
     AnalysisSetRecord,
     ExclusionRecord,
@@ -266,14 +267,7 @@ def results(judged: tuple[JudgedFamily, ...], computed: dict[str, Computed]) -> 
         for index, member in enumerate(one.entered.family.members)
     ]
     columns = {name: [row[name] for row in rows] for name in rows[0]} if rows else {}
-    return Results(**{name: _column(name, values) for name, values in columns.items()})
-
-
-def _column(name: str, values: list[Any]) -> Any:
-    kind = Results.__annotations__[name]
-    if kind is Results.__annotations__["n"]:
-        return np.array(values, dtype=np.int64)
-    return np.array(values, dtype=np.float64) if kind is Results.__annotations__["p"] else tuple(values)
+    return Results(**{name: results_column(name, values) for name, values in columns.items()})
 
 
 def _row(judged: JudgedFamily, index: int, computed: Computed) -> dict[str, Any]:

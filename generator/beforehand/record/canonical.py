@@ -8,6 +8,7 @@ import hashlib
 import io
 import json
 import math
+from collections.abc import Sequence
 from dataclasses import fields
 from typing import Any
 
@@ -15,7 +16,7 @@ import numpy as np
 from pydantic import TypeAdapter
 
 from beforehand.errors import FolderFault
-from beforehand.record.model import Record, Results
+from beforehand.record.model import Floats, Integers, Record, Results
 
 FORMAT = 1
 _RECORD: TypeAdapter[Any] | None = None
@@ -56,15 +57,17 @@ def read_results(content: bytes) -> Results:
     if not rows or rows[0] != names:
         raise FolderFault("tests.csv", "the columns are not those that this version of beforehand writes")
     cells = dict(zip(names, zip(*rows[1:], strict=True) if len(rows) > 1 else [()] * len(names), strict=True))
-    return Results(**{column.name: _column(str(column.type), cells[column.name]) for column in fields(Results)})
+    return Results(**{column.name: results_column(column.name, cells[column.name]) for column in fields(Results)})
 
 
-def _column(kind: str, cells: tuple[str, ...]) -> Any:
-    if "tuple" in kind:
-        return cells
-    if "int" in kind:
-        return np.array([int(cell) for cell in cells], dtype=np.int64)
-    return np.array([float(cell) if cell else math.nan for cell in cells], dtype=np.float64)
+def results_column(name: str, values: Sequence[Any]) -> Any:
+    """Give the values of one column of ``tests.csv`` the column's type; an empty cell is NaN."""
+    kind = Results.__annotations__[name]
+    if kind is Integers:
+        return np.array([int(value) for value in values], dtype=np.int64)
+    if kind is Floats:
+        return np.array([math.nan if value == "" else float(value) for value in values], dtype=np.float64)
+    return tuple(values)
 
 
 def _adapter() -> TypeAdapter[Any]:

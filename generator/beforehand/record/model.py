@@ -16,6 +16,7 @@ from beforehand.terms import (
     ClaimDirection,
     Criterion,
     Design,
+    EnteredAs,
     EvidenceFrom,
     Intent,
     LevelIs,
@@ -60,7 +61,7 @@ class Results:
     """"yes" or "no": whether the estimate lies on the side the claim needs; "" where the claim has no side."""
     p_entered: Floats
     """The p-value that entered the procedure: p after the reading of the level; 1 where there is no result."""
-    entered_as: tuple[str, ...]
+    entered_as: tuple[EnteredAs, ...]
     """How ``p_entered`` follows from p: "as it is", "doubled" (one side, against a level shared by both), "claim side"
     (the p of the claim's side of a two-sided test) or "no result"."""
     rank: Integers
