@@ -75,9 +75,7 @@ def test_no_spec_at_all(text: str) -> None:
 def test_not_utf_8() -> None:
     with pytest.raises(SpecFault) as caught:
         read_spec("beforehand: 1\nstudy: {title: Größe}\n".encode("latin-1"), Path("buoys.yaml"))
-    assert str(caught.value) == (
-        "buoys.yaml: 1 fault\n  line 2: this is not UTF-8 text. Save the file as UTF-8."
-    )
+    assert str(caught.value) == ("buoys.yaml: 1 fault\n  line 2: this is not UTF-8 text. Save the file as UTF-8.")
 
 
 def test_utf_16_is_not_read() -> None:

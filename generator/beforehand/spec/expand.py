@@ -3,6 +3,7 @@
 import dataclasses
 import itertools
 import re
+from collections import Counter
 from collections.abc import Iterator, Mapping
 
 from beforehand.errors import Fault, SpecFault
@@ -26,6 +27,7 @@ from beforehand.spec.model import (
 from beforehand.spec.options import with_defaults
 from beforehand.spec.planned import PlannedFamily, Spec
 
+MOST_NAMED = 10  # labels; a longer list helps nobody
 _RESERVED = "/-%"
 _PLACEHOLDER = re.compile(r"\{(group|first|second|feature)\}")
 
@@ -72,7 +74,7 @@ def _count(spec: Spec, family: PlannedFamily, labels: tuple[str, ...]) -> Iterat
             f"family '{family.id}' plans {family.planned} hypotheses and the data have {len(labels)}. "
             "Correct the data, or the number and the reason for it.",
         )
-    for label in sorted({label for label in labels if labels.count(label) > 1})[:10]:
+    for label in sorted(label for label, rows in Counter(labels).items() if rows > 1)[:MOST_NAMED]:
         yield spec.fault(
             (*place, "each"), f"the label '{label}' stands in several rows; in family '{family.id}' each names one."
         )

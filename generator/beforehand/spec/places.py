@@ -13,7 +13,6 @@ from beforehand.spec import scalars
 Path = tuple[str | int, ...]
 
 LARGEST_FILE = 8_000_000  # bytes
-DEEPEST = 32  # levels: the language itself needs 12
 MOST_VALUES = 400_000
 
 _BLANK = "\n\r\t"
@@ -205,8 +204,8 @@ class _Builder:
     def _begin(self, event: Any, mark: tuple[int, int]) -> None:
         if self._wants_key():
             self._stop(mark, "a key is a word or text in quotes, never a list or a block of keys")
-        if len(self._open) >= DEEPEST:
-            self._stop(mark, f"this is more than {DEEPEST} levels deep")
+        if len(self._open) >= scalars.DEEPEST:
+            self._stop(mark, f"this is more than {scalars.DEEPEST} levels deep")
         value: dict[str, Any] | list[Any] = {} if isinstance(event, yaml.MappingStartEvent) else []
         path = self._place(value, mark)
         self._open.append(_Open(path, value, bool(event.flow_style)))

@@ -47,13 +47,13 @@ class Spec:
     """A spec: read, sound, and expanded as far as it can be without the data."""
 
     path: Path
-    source: bytes
+    source: bytes = field(repr=False)
     """The bytes of the file."""
     document: Document
     families: tuple[PlannedFamily, ...]
-    plan: bytes
+    plan: bytes = field(repr=False)
     """What is sealed, in the form of RFC 8785."""
-    particulars: bytes
+    particulars: bytes = field(repr=False)
     """What is printed and never a departure, in the same form."""
     places: Places = field(repr=False)
 

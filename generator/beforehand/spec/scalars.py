@@ -5,6 +5,7 @@ import unicodedata
 from dataclasses import dataclass
 from decimal import Decimal
 
+DEEPEST = 32  # levels: the language itself needs 12
 LARGEST_WHOLE = 2**53 - 1  # above, JSON readers no longer agree on whole numbers
 
 _WHOLE = re.compile(r"[-+]?(?:0|[1-9]\d*)")
@@ -104,6 +105,8 @@ def syntax(  # noqa: PLR0911 -- one sentence for each kind of fault
     character = written[column - 1] if 0 < column <= len(written) else ""
     if character == "\t" or "\t" in written[: len(written) - len(written.lstrip())]:
         return "a tab stands here. YAML wants spaces at the beginning of a line."
+    if "nesting depth" in problem:
+        return f"this is more than {DEEPEST} levels deep"
     if "flow mapping" in context:
         return (
             "a list of keys in { } is broken here: a comma or } is missing, or a quote is not closed. "

@@ -15,7 +15,7 @@ from beforehand.hypothesis_tests.contract import STATISTICAL_TESTS
 from beforehand.multiplicity.contract import PROCEDURES
 from beforehand.spec.availability import is_later
 from beforehand.spec.model import PARTICULAR, Document, PerHypothesis
-from beforehand.spec.model.walk import fields_of, models_in
+from beforehand.spec.model.walk import fields_of, models_below
 
 SCHEMA_FILE = "beforehand.schema.json"
 REFERENCE_FILE = "keys.md"
@@ -64,9 +64,8 @@ def _models() -> dict[str, type[BaseModel]]:
     def meet(model: type[BaseModel]) -> None:
         if model.__name__ not in found:
             found[model.__name__] = model
-            for field in model.model_fields.values():
-                for below in models_in(field.annotation):
-                    meet(below)
+            for below in models_below(model):
+                meet(below)
 
     meet(Document)
     return found

@@ -32,7 +32,7 @@ MOST_DECIMALS = 15  # a float holds no more
 _TOKEN = re.compile(
     r"""(?P<number>(?:\d+\.?\d*|\.\d+)(?:[eE][-+]?\d+)?(?![A-Za-z0-9_.]))
       | (?P<text>'[^']*'|"[^"]*")
-      | (?P<name>[A-Za-z_][A-Za-z0-9_]*)
+      | (?P<name>[A-Za-z_][A-Za-z0-9_]*(?!\w))
       | (?P<sign>==|!=|<=|>=|\*\*|&&|\|\||[-+*/<>()\[\],=])""",
     re.VERBOSE,
 )

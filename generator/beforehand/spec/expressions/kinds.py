@@ -117,8 +117,8 @@ def _compare(sign: str, left: Node, right: Node, known: Mapping[str, Known]) -> 
                 return
     if kinds[0] != kinds[1]:
         raise ExpressionFault(
-            f"{_named(left)} is {_WORDS[kinds[0]]} and {_named(right)} is {_WORDS[kinds[1]]}: they can't be compared. "
-            + ("Text stands in quotes, numbers don't." if set(kinds) == {"text", "number"} else "")
+            f"{_named(left)} is {_WORDS[kinds[0]]} and {_named(right)} is {_WORDS[kinds[1]]}: they can't be compared."
+            + (" Text stands in quotes, numbers don't." if set(kinds) == {"text", "number"} else "")
         )
     if kinds[0] == "text" and sign not in ("==", "!="):
         raise ExpressionFault(f"text has no order that all agree on: '{sign}' compares numbers and dates")

@@ -1,6 +1,7 @@
 """Which model describes a place of the file: for messages, the JSON Schema and the list of what is not built."""
 
 import types
+import typing
 from collections.abc import Iterator
 from typing import Annotated, Any, Literal, Union, get_args, get_origin
 
@@ -18,6 +19,19 @@ def key_of(name: str, field: FieldInfo) -> str:
 def fields_of(model: type[BaseModel]) -> dict[str, FieldInfo]:
     """Give the fields of a model by the keys that are written in YAML."""
     return {key_of(name, field): field for name, field in model.model_fields.items()}
+
+
+def further(model: type[BaseModel]) -> Any:
+    """Give the type of the keys that a model takes without naming them; None where it takes no such keys."""
+    return (
+        typing.get_type_hints(model).get("__pydantic_extra__") if model.model_config.get("extra") == "allow" else None
+    )
+
+
+def models_below(model: type[BaseModel]) -> Iterator[type[BaseModel]]:
+    """Find the models that the values of a model's keys may be."""
+    for annotation in (*(field.annotation for field in model.model_fields.values()), further(model)):
+        yield from models_in(annotation)
 
 
 def models_in(annotation: Any) -> Iterator[type[BaseModel]]:
@@ -64,3 +78,5 @@ def _below(annotation: Any, part: str | int) -> Iterator[Any]:
             fields = fields_of(found)
             if part in fields:
                 yield fields[part].annotation
+            elif further(found):
+                yield get_args(further(found))[1]
