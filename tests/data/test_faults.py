@@ -31,7 +31,7 @@ def test_the_message_is_whole(tmp_path: Path, message: Path) -> None:
     assert str(refused.value) + "\n" == message.read_text("utf-8")
 
 
-def test_the_spec_of_the_table_reads_a_sound_file(tmp_path: Path) -> None:
+def test_the_spec_of_the_table_reads_a_sound_file_with_values_at_both_ends_of_the_range(tmp_path: Path) -> None:
     dataset = read_data(load_spec(study(tmp_path, FAULTS / "sound.csv")))
     assert dataset.tables["stores"].lines.tolist() == [2, 3, 4, 5, 6]
 

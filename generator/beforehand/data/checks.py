@@ -33,7 +33,7 @@ EXPECTED = {
 }
 
 
-def typed_columns(table: TextTable, declared: DataSet, *, path: str) -> dict[str, Column]:
+def typed_columns(table: TextTable, declared: DataSet) -> dict[str, Column]:
     """Give every column of a file as its kind; columns that the spec doesn't declare stay text.
 
     Exactly the declared codes are missing, in every column. Where a value is missing, NaN stands among numbers and ""
@@ -52,7 +52,7 @@ def typed_columns(table: TextTable, declared: DataSet, *, path: str) -> dict[str
     if not faults:
         faults = _unidentified(columns, declared)
     if faults:
-        raise DataFault(path, capped(faults))
+        raise DataFault(declared.file, capped(faults))
     return columns
 
 
@@ -63,11 +63,8 @@ def _absent_columns(table: TextTable, declared: DataSet) -> list[Fault]:
         if name in table.header:
             continue
         near = difflib.get_close_matches(name, free, n=1, cutoff=0.5) or [f for f in free if _alike(f, name)]
-        hint = (
-            f"The nearest name is {quoted(near[0])}."
-            if near
-            else f"It names {listed([*map(quoted, table.header)], shown=10)}."
-        )
+        names = listed([*map(quoted, table.header)], shown=10)
+        hint = f"The nearest name is {quoted(near[0])}." if near else f"It names {names}."
         faults.append(Fault(1, 0, f"the header has no column {quoted(name)}, which the spec declares. {hint}"))
     return faults
 
@@ -100,15 +97,15 @@ def _text_column(texts: Texts, missing: Rows) -> Column:
 
 def _numbers(texts: Texts, present: list[int], *, whole: bool) -> tuple[NDArray[np.float64], list[int]]:
     """Read numbers, NaN where missing; and the rows whose text is none."""
+    found = np.array([_number(texts[row]) for row in present], dtype=np.float64)
+    odd = ~np.isfinite(found)
+    if whole:
+        odd |= (found < 0) | (found != np.floor(found))
+    for place in np.flatnonzero(np.abs(found) > LARGEST_WHOLE).tolist():
+        odd[place] |= whole or WHOLE.fullmatch(texts[present[place]]) is not None
     values = np.full(len(texts), np.nan)
-    odd: list[int] = []
-    for row in present:
-        text = texts[row]
-        values[row] = value = _number(text)
-        fits = math.isfinite(value) and not (whole and (value < 0 or value % 1))
-        if not fits or (abs(value) > LARGEST_WHOLE and (whole or WHOLE.fullmatch(text))):
-            odd.append(row)
-    return values, odd
+    values[present] = found
+    return values, [present[place] for place in np.flatnonzero(odd).tolist()]
 
 
 def _number(text: str) -> float:
@@ -216,14 +213,13 @@ def _outside(name: str, texts: Texts, values: NDArray[np.float64], rule: ColumnS
     rows = np.flatnonzero((values < low) | (values > high)).tolist()  # a missing value is neither
     if not rows:
         return []
-    return [
-        Fault(
-            rows[0] + FIRST_ROW,
-            0,
-            f"the column {quoted(name)} must lie between {low:g} and {high:g}; found {_where(_found(texts, rows))}. "
-            "Correct the file or the range, or name the code that means missing under missing_codes.",
-        )
-    ]
+    told = f"the column {quoted(name)} must lie between {_plain(low)} and {_plain(high)}; found"
+    advice = "Correct the file or the range, or name the code that means missing under missing_codes."
+    return [Fault(rows[0] + FIRST_ROW, 0, f"{told} {_where(_found(texts, rows))}. {advice}")]
+
+
+def _plain(number: float) -> str:
+    return repr(number).removesuffix(".0")
 
 
 def _unidentified(columns: dict[str, Column], declared: DataSet) -> list[Fault]:
@@ -232,9 +228,8 @@ def _unidentified(columns: dict[str, Column], declared: DataSet) -> list[Fault]:
     if not names:
         return []
     named = f"identified_by: [{', '.join(names)}]"
-    missing = [
-        int(row) + FIRST_ROW for row in np.flatnonzero(np.any([columns[name].missing for name in names], axis=0))
-    ]
+    gone = np.any([columns[name].missing for name in names], axis=0)
+    missing = [row + FIRST_ROW for row in np.flatnonzero(gone).tolist()]
     if missing:
         return [Fault(missing[0], 0, f"{named} must name every row, and is missing on {line_list(missing)}.")]
     lines: dict[Key, list[int]] = {}

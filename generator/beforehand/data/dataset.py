@@ -86,7 +86,7 @@ def with_members(spec: Spec, dataset: Dataset) -> Spec:
 def _read(declared: DataSet, folder: Path, data_root: Path | None) -> tuple[InputFile, Table]:
     raw = open_input(declared.file, folder=folder, data_root=data_root)
     text = read_table(raw, path=declared.file)
-    typed = typed_columns(text, declared, path=declared.file)
+    typed = typed_columns(text, declared)
     order = _order(typed, declared)
     columns = {name: Column(c.values[order], c.missing[order], c.kind) for name, c in typed.items()}
     checksums = digests.of_table(columns)

@@ -101,20 +101,21 @@ def _undeclared_levels(name: str, rule: Derived, column: Column, lines: NDArray[
 
 
 def _grouping(columns: Mapping[str, Column], declared: DataSet) -> Grouping:
-    """Give the allocated group of each row; none where no allocation is declared, or it is derived later."""
-    rows = next(iter(columns.values())).missing.size
-    by = declared.allocated.by if declared.allocated else None
-    if by is None or by not in columns:
+    """Give the allocated group of each row; no groups where no allocation is declared."""
+    if declared.allocated is None:
+        rows = next(iter(columns.values())).missing.size
         return Grouping((), np.full(rows, -1, dtype=np.intp))
-    column = columns[by]
-    present = {str(value) for value in column.values[~column.missing].tolist()}
-    rule = declared.columns.get(by) or declared.derive.get(by)
-    labels = (rule.levels if rule else None) or tuple(sorted(present))
+    column = columns[declared.allocated.by]
+    values = column.values.tolist()
+    present = sorted({value for value, gone in zip(values, column.missing, strict=True) if not gone})
+    labels = declared.columns[declared.allocated.by].levels or tuple(map(_label, present))
     code = {label: i for i, label in enumerate(labels)}
-    codes = [
-        -1 if gone else code[str(value)] for value, gone in zip(column.values.tolist(), column.missing, strict=True)
-    ]
+    codes = [-1 if gone else code[_label(value)] for value, gone in zip(values, column.missing, strict=True)]
     return Grouping(labels, np.array(codes, dtype=np.intp))
+
+
+def _label(value: str | float) -> str:
+    return value if isinstance(value, str) else repr(value).removesuffix(".0")
 
 
 def _rows_of(column: Column, rows: Rows) -> Column:

@@ -12,10 +12,10 @@ way in which a number is written, and, where rows are identified, whatever their
 
 import hashlib
 import json
-import math
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 
+import numpy as np
 import rfc8785
 
 from beforehand.spec.expressions import Column
@@ -56,20 +56,23 @@ def _array(values: Iterable[str]) -> str:
 
 def _written(column: Column) -> list[str]:
     """Write each value of a column as RFC 8785 does; texts recur, so each is written once."""
-    values = column.values.tolist()
     if column.kind == "number":
-        written = [_number(value) for value in values]
+        written = _numbers(column)
     else:
+        values = column.values.tolist()
         known = {value: _text(value) for value in set(values)}
         written = [known[value] for value in values]
-    for row in column.missing.nonzero()[0]:
+    for row in np.flatnonzero(column.missing).tolist():
         written[row] = NULL
     return written
 
 
-def _number(value: float) -> str:
-    if 1e-4 <= abs(value) < 1e16:  # here Python and RFC 8785 write the same digits in the same form
-        return repr(value).removesuffix(".0")
-    if value == 0:
-        return "0"
-    return NULL if math.isnan(value) else rfc8785.dumps(value).decode()  # NaN stands where a number is missing
+def _numbers(column: Column) -> list[str]:
+    numbers = column.values + 0.0  # -0 is written 0
+    # from 1e-4 to 1e16 Python and RFC 8785 write the same digits in the same form, but for ".0"
+    written = [text.removesuffix(".0") for text in map(repr, numbers.tolist())]
+    size = np.abs(numbers)
+    same = (size == 0) | (size >= 1e-4) & (size < 1e16) | column.missing
+    for row in np.flatnonzero(~same).tolist():
+        written[row] = rfc8785.dumps(float(numbers[row])).decode()
+    return written

@@ -26,11 +26,13 @@ class Samples:
     """As the test takes them: the values; first, second (groups, or pairs in the order of their key); or p, estimate,
     lower, upper of one row, NaN where one is not supplied. Events are booleans."""
     n: tuple[int, ...]
-    """Units in each group, first group first; for pairs, the number of pairs."""
+    """Units in each group, first group first; for pairs, the number of pairs; () where the numbers are supplied."""
     rows_considered: int
     """Rows of the analysis set, the condition and the groups, before any is dropped."""
     missing: tuple[int, ...]
     """Rows dropped for a missing value, in each group; for pairs, the pairs dropped."""
+    undecided: int
+    """Rows not considered because the condition of the hypothesis has no value for them."""
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -52,6 +54,7 @@ class _Sides:
     """The column of the outcome on each side."""
     paired: bool
     """Whether the sides stand in the same order, a pair at each place."""
+    undecided: int
 
     @property
     def missing(self) -> tuple[NDArray[np.bool_], ...]:
@@ -83,6 +86,7 @@ def take(dataset: Dataset, hypothesis: Hypothesis) -> Samples:
         n=tuple(array.size for array in arrays[groups]),
         rows_considered=np.unique(np.concatenate(sides.positions)).size,
         missing=tuple(int(gone.sum()) for gone in sides.missing[groups]),
+        undecided=sides.undecided,
     )
 
 
@@ -104,21 +108,24 @@ def unlabelled(dataset: Dataset, hypothesis: Hypothesis) -> Unlabelled:
 
 def _sides(table: Table, hypothesis: Hypothesis) -> _Sides:
     """Find the rows of each side, pairs by their key, and check what the test needs of them."""
-    rows = rows_of(table, hypothesis, what=f"hypothesis '{hypothesis.id}'")
+    chosen = rows_of(table, hypothesis, what=f"hypothesis '{hypothesis.id}'")
+    rows, undecided = chosen.rows, chosen.undecided
     outcome, groups = hypothesis.outcome, hypothesis.groups
     if isinstance(outcome, PairOutcome):
-        here = np.flatnonzero(rows)
-        sides = _Sides((here, here), (table.columns[outcome.first], table.columns[outcome.second]), paired=True)
+        here = (np.flatnonzero(rows),) * 2
+        columns = table.columns[outcome.first], table.columns[outcome.second]
+        sides = _Sides(here, columns, paired=True, undecided=undecided)
     elif groups is None:
-        sides = _Sides((np.flatnonzero(rows),), (_outcome(table, outcome),), paired=False)
+        sides = _Sides((np.flatnonzero(rows),), (_outcome(table, outcome),), paired=False, undecided=undecided)
     else:
         group = table.columns[groups.column]
         first, second = (
             np.flatnonzero(rows & (group.values == label) & ~group.missing) for label in (groups.first, groups.second)
         )
-        if hypothesis.matched_by:
+        paired = hypothesis.matched_by is not None
+        if paired:
             first, second = _matched(table, first, second, hypothesis)
-        sides = _Sides((first, second), (_outcome(table, outcome),) * 2, paired=hypothesis.matched_by is not None)
+        sides = _Sides((first, second), (_outcome(table, outcome),) * 2, paired=paired, undecided=undecided)
     if STATISTICAL_TESTS[hypothesis.test].independent_units:
         _refuse_repeated_units(table, sides, hypothesis)
     return sides
@@ -128,7 +135,7 @@ def _outcome(table: Table, outcome: str | EventOutcome | None) -> Column:
     """Give the column of the outcome; an event whose status is missing is neither yes nor no."""
     if isinstance(outcome, EventOutcome):
         status = table.columns[outcome.column]
-        return Column(np.isin(status.values.astype(str), outcome.values), status.missing, "truth")
+        return Column(np.isin(status.values, outcome.values), status.missing, "truth")
     return table.columns[str(outcome)]
 
 
@@ -150,18 +157,19 @@ def _key_faults(table: Table, key: Column, first: Positions, second: Positions, 
     lines = in_order(table.lines[both[key.missing[both]]])
     if lines:
         return [Fault(lines[0], 0, f"{told} it is missing on {line_list(lines)}.")]
-    faults = []
     sides = [_by_key(key, side) for side in (first, second)]
-    for side in sides:
-        for rows in side.values():
-            if len(rows) > 1:
-                lines = in_order(table.lines[rows])
-                faults.append(Fault(lines[0], 0, f"{told} the same key stands twice in one group: {line_list(lines)}."))
+    twice = [in_order(table.lines[rows]) for side in sides for rows in side.values() if len(rows) > 1]
+    advice = "Keep one of them by 'where', or correct the file."
+    faults = [
+        Fault(lines[0], 0, f"{told} the same key stands twice in one group, on {line_list(lines)}. {advice}")
+        for lines in twice
+    ]
     alone = [rows[0] for one, other in (sides, sides[::-1]) for name, rows in one.items() if name not in other]
     if alone:
         lines = in_order(table.lines[alone])
         advice = "Leave out such rows by 'where' or 'exclude', or correct the file."
-        faults.append(Fault(lines[0], 0, f"{told} {line_list(lines)} have no partner in the other group. {advice}"))
+        told = f"{told} in the other group there is no partner for {line_list(lines)}. {advice}"
+        faults.append(Fault(lines[0], 0, told))
     return faults
 
 
@@ -229,4 +237,4 @@ def _supplied(dataset: Dataset, table: Table, hypothesis: Hypothesis) -> Samples
         line = int(table.lines[row])
         told = f"hypothesis '{hypothesis.id}' allows no missing p-value (method: fail); it is missing on line {line}."
         raise DataFault(table.declared.file, [Fault(line, 0, told)])
-    return Samples(arrays=tuple(numbers), n=(1 - missing,), rows_considered=1, missing=(missing,))
+    return Samples(arrays=tuple(numbers), n=(), rows_considered=1, missing=(missing,), undecided=0)

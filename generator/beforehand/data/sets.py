@@ -32,6 +32,15 @@ class Missing:
     counts: Counts
 
 
+@dataclass(frozen=True)
+class Chosen:
+    """The rows that a hypothesis is about."""
+
+    rows: Rows
+    undecided: int
+    """How many rows of its analysis set its condition has no value for: they are left out."""
+
+
 def analysis_rows(
     columns: Mapping[str, Column], lines: NDArray[np.intp], grouping: Grouping, declared: DataSet
 ) -> tuple[AnalysisRows, ...]:
@@ -53,15 +62,16 @@ def analysis_rows(
     return tuple(found)
 
 
-def rows_of(table: Table, asked: PerHypothesis, *, what: str) -> Rows:
-    """Give the rows that a hypothesis is about: those of its analysis set in which its condition is true."""
+def rows_of(table: Table, asked: PerHypothesis, *, what: str) -> Chosen:
+    """Find the rows that a hypothesis is about: those of its analysis set in which its condition is true."""
     rows = np.ones(table.lines.size, dtype=bool)
     if asked.analysis_set:
-        rows &= table.analysis_set(asked.analysis_set).rows
-    if asked.where:
-        told = f"the condition of {what}"
-        rows &= is_true(evaluated(asked.where, table.columns, table.lines, what=told, path=table.declared.file))
-    return rows
+        rows = table.analysis_set(asked.analysis_set).rows
+    if not asked.where:
+        return Chosen(rows, 0)
+    told = f"the condition of {what}"
+    condition = evaluated(asked.where, table.columns, table.lines, what=told, path=table.declared.file)
+    return Chosen(rows & is_true(condition), int((rows & condition.missing).sum()))
 
 
 def overlaps(table: Table) -> tuple[Overlap, ...]:

@@ -12,7 +12,7 @@ from beforehand.spec.model import HypothesesFrom
 def labelled_rows(table: Table, form: HypothesesFrom, family: str) -> dict[str, int]:
     """Find the row of each hypothesis by its label, in the order of the rows."""
     told = f"the column {quoted(form.each)} names the hypotheses of family '{family}'"
-    rows = np.flatnonzero(rows_of(table, form, what=f"family '{family}'"))
+    rows = np.flatnonzero(rows_of(table, form, what=f"family '{family}'").rows)
     label = table.columns[form.each]
     unnamed = in_order(table.lines[rows[label.missing[rows]]])
     if unnamed:

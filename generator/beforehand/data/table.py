@@ -40,10 +40,6 @@ class Grouping:
             by_group[NO_GROUP] = int((chosen == -1).sum())
         return Counts(int(rows.sum()), by_group)
 
-    def of(self, rows: Rows) -> "Grouping":
-        """Keep the rows that are true."""
-        return Grouping(self.labels, self.codes[rows])
-
 
 @dataclass(frozen=True, kw_only=True)
 class Excluded:
@@ -104,6 +100,8 @@ class Table:
     def units(self) -> NDArray[np.intp]:
         """A number for each row, the same in the rows of one independent unit."""
         names = list(self.declared.unit_columns)
+        if not names:
+            return np.arange(self.lines.size, dtype=np.intp)
         numbers = self.frame.groupby(names, sort=False, dropna=False).ngroup()
         return np.asarray(numbers, dtype=np.intp)
 
