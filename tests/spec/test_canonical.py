@@ -140,6 +140,7 @@ def test_the_plan_holds_the_expansion_and_no_particular() -> None:
     plan = json.loads(PLAN)
     assert [member["id"] for member in plan["families"][0]["members"]] == ["main/copper-bare", "main/silicone-bare"]
     assert plan["families"][0]["members"][0]["null_hypothesis"] == {"at": 0}
+    assert not {"comparisons", "hypotheses", "hypotheses_from"} & set(plan["families"][0])
     for key in ("file", "print_row_values"):
         assert key not in plan["data"][0]
     assert not {"dated", "prepared_by"} & set(plan["study"])

@@ -147,6 +147,7 @@ def test_names_come_in_the_order_of_their_first_use() -> None:
         ("größe > 1", "a name with other letters than a to z is written column('größe')"),
         ("ａ > 1", "a name with other letters than a to z is written column('ａ')"),
         ("2x > 1", "'2x' is not a number; a column whose name begins with a digit is written column('its name')"),
+        ("a > ٣", "'٣' is not a number; a column whose name begins with a digit is written column('its name')"),
         ("a == 'x", "\"'\" at character 6 has no meaning in an expression. A quote is opened and never closed."),
         ("pick(a > 1, 2)", "pick takes 3, and 2 are given. Write pick(condition, a, b)."),
         ("round(a, b)", "the decimals of round must be a whole number between 0 and 15"),

@@ -94,11 +94,15 @@ def test_any_change_of_a_spec_gives_a_spec_or_a_fault_with_a_place(seed: int) ->
     base = json.loads(
         json.dumps(yaml.safe_load((HERE / "faults" / "base.yaml").read_text(encoding="utf-8")), default=str)
     )
+    refused: list[SpecFault] = []
     for _ in range(10):
         try:
             read_spec(changed(copy.deepcopy(base), random).encode(), Path("buoys.yaml"))
         except SpecFault as fault:
-            assert all(one.line for one in fault.faults) or "has no keys" in str(fault)
+            refused.append(fault)
+    assert refused
+    for fault in refused:
+        assert all(one.line for one in fault.faults) or "has no keys" in str(fault)
 
 
 def test_loading_opens_no_data(tmp_path: Path) -> None:

@@ -40,6 +40,7 @@ def faults(text: str) -> list[str]:
         ("1.2.3", "1.2.3"),
         ("a: b", None),
         ('"😀"', "😀"),
+        ("٣", "٣"),  # a digit of another script is text, never the number 3
     ],
 )
 def test_word(word: str, value: object) -> None:

@@ -6,16 +6,17 @@ from typing import Any, cast
 import rfc8785
 from pydantic import BaseModel
 
-from beforehand.spec.model import PARTICULAR, Document, Exact
+from beforehand.spec.model import PARTICULAR, Document, Exact, Family
 from beforehand.spec.planned import PlannedFamily
 
 _EMPTY: tuple[Any, ...] = ({}, (), [], None)
+_FORMS = ("comparisons", "hypotheses", "hypotheses_from")
 
 
 def canonical_parts(document: Document, families: tuple[PlannedFamily, ...]) -> tuple[bytes, bytes]:
     """Give the plan, with the expansion and every default, and the particulars."""
     plan, particulars = _split(document)
-    plan["families"] = [_family(family) for family in families]
+    plan["families"] = [_family(*pair) for pair in zip(document.families, families, strict=True)]
     return rfc8785.dumps(plan), rfc8785.dumps(particulars)
 
 
@@ -24,22 +25,12 @@ def checksum(part: bytes) -> str:
     return hashlib.sha256(part).hexdigest()
 
 
-def _family(family: PlannedFamily) -> dict[str, Any]:
-    """Write a family with its members, in place of the short form they come from."""
-    written = {
-        "id": family.id,
-        "question": family.question,
-        "purpose": family.purpose,
-        "procedure": family.procedure,
-        "procedure_options": dict(family.procedure_options),
-        "promise": plain(family.promise),
-        "stands_apart": family.stands_apart,
-        "success": plain(family.success),
-        "planned": family.planned,
-        "members": [plain(member) for member in family.members] if not family.from_data else None,
-        "members_from": plain(family.from_data),
-    }
-    return {key: value for key, value in written.items() if value is not None}
+def _family(written: Family, planned: PlannedFamily) -> dict[str, Any]:
+    """Write a family with its members in place of the form they come from."""
+    shared = {key: plain(value) for key, value, _ in _keys(written) if key not in _FORMS}
+    members = {"from_data": plain(planned.from_data)} if planned.from_data else {"members": plain(planned.members)}
+    options = {"procedure_options": planned.procedure_options} if planned.procedure_options else {}
+    return {**shared, **options, "planned": planned.planned, **members}
 
 
 def _split(model: BaseModel) -> tuple[dict[str, Any], dict[str, Any]]:

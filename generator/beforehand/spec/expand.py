@@ -16,6 +16,7 @@ from beforehand.spec.model import (
     EventOutcome,
     Family,
     Groups,
+    HypothesesFrom,
     Hypothesis,
     NullHypothesis,
     Outcome,
@@ -91,7 +92,7 @@ def _with_rows(document: Document, family: PlannedFamily, labels: tuple[str, ...
 def _planned(family: Family, document: Document) -> PlannedFamily:
     members = tuple(_members(family, document))
     source = family.hypotheses_from
-    from_data = source if source and source.outcomes is None else None
+    from_data = _with_defaults(source, document) if source and source.outcomes is None else None
     return PlannedFamily(
         id=family.id,
         question=family.question,
@@ -105,6 +106,16 @@ def _planned(family: Family, document: Document) -> PlannedFamily:
         from_data=from_data,
         stands_apart=family.promise is not None,
     )
+
+
+def _with_defaults(source: HypothesesFrom, document: Document) -> HypothesesFrom:
+    """Fill in what every member will have."""
+    filled = {
+        "data": source.data or document.data[0].id,
+        "alternative": source.alternative or "two_sided",
+        "options": with_defaults(source.options, STATISTICAL_TESTS[source.test]),
+    }
+    return source.model_copy(update=filled)
 
 
 def _of_study(promise: StudyPromise) -> Promise:

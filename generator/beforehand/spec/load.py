@@ -40,7 +40,8 @@ def load_spec(path: Path) -> Spec:
     """Read a spec from its file; SpecFault holds everything that is wrong with it."""
     path = Path(path)
     try:
-        source = path.read_bytes()
+        with path.open("rb") as file:
+            source = file.read(places.LARGEST_FILE + 1)  # one byte too many is enough to refuse it
     except OSError as error:
         raise SpecFault(path.name, f"the file can't be read: {error.strerror}") from None
     return read_spec(source, path)
@@ -70,15 +71,13 @@ def _whole(fault: Fault) -> Fault:
 def _checked(reading: places.Reading) -> tuple[Document | None, list[Fault]]:
     """Check every key, and across keys where they are sound; the document only when nothing is wrong."""
     faults = list(reading.faults)
-    unsound = [*reading.trapped]
     try:
         document = Document.model_validate(reading.value)
+        sound: _Sound | None = _Sound(document, tuple(range(len(document.families))), all_families=True, promise=True)
     except ValidationError as error:
         worded = wording.faults_of(error.errors(include_url=False), reading)
         faults += [fault for _, fault in worded]
-        unsound += [path for path, _ in worded]
-        document = None
-    sound = _sound(reading.value, unsound)
+        document, sound = None, _sound(reading.value, [*reading.trapped, *(path for path, _ in worded)])
     if sound:
         faults += _across(sound, reading.places)
     return (None if faults else document), faults
@@ -105,11 +104,7 @@ def _sound(value: dict[str, Any], unsound: list[places.Path]) -> _Sound | None:
     rest = {"beforehand": 1, "promise": _PROMISE, **rest}
     rest["families"] = tuple(value["families"][number] for number in kept)
     try:
-        return _Sound(
-            Document.model_validate(rest),
-            kept,
-            "families" not in sections,
-            "promise" in value and "promise" not in sections,
-        )
+        document = Document.model_validate(rest)
     except ValidationError:
         return None
+    return _Sound(document, kept, all_families="families" not in sections, promise="promise" not in sections)

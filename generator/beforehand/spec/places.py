@@ -1,5 +1,6 @@
 """From the bytes of a YAML file to plain values, each with its place; every trap of YAML is a fault here."""
 
+import itertools
 import unicodedata
 from collections.abc import Iterator
 from dataclasses import dataclass, field
@@ -272,9 +273,9 @@ class _Builder:
             self._trapped.add((*closed.path, broken))
             return
         for key in closed.empty:
-            mark = self._keys[(*closed.path, key)]
-            name = key if not key.startswith(_AGAIN) else "again"
-            self._fault(mark, f"the key '{name}' has no value. {_for_empty(name, braces=closed.braces)}")
+            if not key.startswith(_AGAIN):  # a key that stands twice has its fault already
+                hint = _for_empty(key, braces=closed.braces)
+                self._fault(self._keys[(*closed.path, key)], f"the key '{key}' has no value. {hint}")
 
 
 def _for_empty(name: str, *, braces: bool) -> str:
@@ -284,13 +285,12 @@ def _for_empty(name: str, *, braces: bool) -> str:
 
 
 def _cut_expression(value: Any, keys: list[str], empty: list[str]) -> str | None:
-    """Find the key whose expression was cut at its first comma: ``{where: pick(a, b, c)}``."""
-    for key in empty:
-        before = keys[: keys.index(key)] if key in keys else []
-        for earlier in before[-1:]:
-            written = value[earlier]
-            if isinstance(written, str) and written.count("(") > written.count(")"):
-                for cut in [name for name in empty if name in keys and keys.index(name) >= keys.index(key)]:
+    """Find the key whose expression was cut at its first comma, ``{where: pick(a, b, c)}``; drop what was cut off."""
+    for before, key in itertools.pairwise(keys):
+        written = value[before]
+        if key in empty and isinstance(written, str) and written.count("(") > written.count(")"):
+            for cut in keys[keys.index(key) :]:
+                if cut in empty:
                     del value[cut]
-                return earlier
+            return before
     return None

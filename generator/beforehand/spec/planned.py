@@ -89,7 +89,7 @@ class Spec:
 
     @property
     def plan_checksum(self) -> str:
-        """SHA-256 of the plan."""
+        """The SHA-256 of the plan."""
         return hashlib.sha256(self.plan).hexdigest()
 
     def data_set(self, id: str) -> DataSet:

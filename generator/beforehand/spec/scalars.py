@@ -8,15 +8,16 @@ from decimal import Decimal
 DEEPEST = 32  # levels: the language itself needs 12
 LARGEST_WHOLE = 2**53 - 1  # above, JSON readers no longer agree on whole numbers
 
-_WHOLE = re.compile(r"[-+]?(?:0|[1-9]\d*)")
-_NUMBER = re.compile(r"[-+]?(?:(?:0|[1-9]\d*)(?:\.\d*)?|\.\d+)(?:[eE][-+]?\d+)?")
+_WHOLE = re.compile(r"[-+]?(?:0|[1-9]\d*)", re.ASCII)
+_NUMBER = re.compile(r"[-+]?(?:(?:0|[1-9]\d*)(?:\.\d*)?|\.\d+)(?:[eE][-+]?\d+)?", re.ASCII)
 _NO_VALUE = ("", "~", "null", "Null", "NULL")
 _TRUTH_WORDS = re.compile(r"yes|Yes|YES|no|No|NO|on|On|ON|off|Off|OFF|True|TRUE|False|FALSE")
 _ODD_NUMBERS = re.compile(
     r"[-+]?(?:0[xXoObB][0-9a-fA-F_]+|0\d[\d_]*(?:\.[\d_]*)?(?:[eE][-+]?\d+)?"
     r"|\d[\d_]*(?::[0-5]?\d)+(?:\.[\d_]*)?"
     r"|(?:\d+_[\d_]*|_\d[\d_]*)(?:\.[\d_]*)?(?:[eE][-+]?\d+)?|\d+\.\d*_[\d_]*|\.(?:inf|Inf|INF))"
-    r"|\.(?:nan|NaN|NAN)"
+    r"|\.(?:nan|NaN|NAN)",
+    re.ASCII,
 )
 
 

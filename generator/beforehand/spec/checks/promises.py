@@ -2,7 +2,7 @@
 
 from collections.abc import Iterator
 
-from beforehand.multiplicity.contract import PROCEDURES
+from beforehand.multiplicity.contract import PROCEDURES, Procedure
 from beforehand.spec.checks.blocks import blocks_of, promise_of
 from beforehand.spec.checks.sides import check_level_is
 from beforehand.spec.expand import levels_of, pairs_of
@@ -10,7 +10,7 @@ from beforehand.spec.hints import nearest
 from beforehand.spec.model import Comparisons, Document, Family, HypothesesFrom
 from beforehand.spec.options import faults_of
 from beforehand.spec.places import Finding, Path
-from beforehand.terms import CRITERION_WORDS
+from beforehand.terms import CRITERION_WORDS, Criterion
 
 
 def check_scheme(document: Document) -> Iterator[Finding]:
@@ -101,8 +101,8 @@ def check_procedure(document: Document, number: int) -> Iterator[Finding]:
     procedure = PROCEDURES[family.procedure]
     criterion = promise_of(document, family).criterion
     # One hypothesis needs no adjustment: its own level is the family's, whichever procedure is named.
-    if criterion and not procedure.keeps(criterion) and _count(document, family) != 1:
-        keeping = [name for name in PROCEDURES if PROCEDURES[name].keeps(criterion)]
+    if criterion and not _keeps(procedure, criterion) and _count(document, family) != 1:
+        keeping = [name for name in PROCEDURES if _keeps(PROCEDURES[name], criterion)]
         yield Finding(
             (*path, "procedure"),
             f"family '{family.id}' promises the {CRITERION_WORDS[criterion]}, and '{family.procedure}' controls the "
@@ -111,6 +111,11 @@ def check_procedure(document: Document, number: int) -> Iterator[Finding]:
     for name, text in faults_of(family.procedure_options, procedure, "procedure"):
         at = (*path, "procedure_options", name) if name else path
         yield Finding(at, f"family '{family.id}': {text}", at_key=True)
+
+
+def _keeps(procedure: Procedure, criterion: Criterion) -> bool:
+    """Whether a procedure keeps what is promised; a family-wise error rate whichever hypotheses are true."""
+    return procedure.keeps(criterion) and (procedure.strong or criterion != "familywise_error_rate")
 
 
 def _count(document: Document, family: Family) -> int | None:

@@ -1,10 +1,9 @@
 """From the text of an expression to its tree: a closed grammar, bounded in length, depth and size."""
 
 import difflib
-import re
-from dataclasses import dataclass
 from typing import Any, NoReturn, cast
 
+from beforehand.spec.expressions.tokens import INSTEAD, Token, tokens
 from beforehand.spec.expressions.tree import (
     Among,
     Arithmetic,
@@ -26,43 +25,12 @@ from beforehand.spec.expressions.tree import (
 
 LONGEST = 500  # characters
 DEEPEST = 20  # parentheses, functions, minus signs and `not` inside one another
-LARGEST = 200  # values, signs and words
 MOST_DECIMALS = 15  # a float holds no more
 
-_TOKEN = re.compile(
-    r"""(?P<number>(?:\d+\.?\d*|\.\d+)(?:[eE][-+]?\d+)?(?![A-Za-z0-9_.]))
-      | (?P<text>'[^']*'|"[^"]*")
-      | (?P<name>[A-Za-z_][A-Za-z0-9_]*(?!\w))
-      | (?P<sign>==|!=|<=|>=|\*\*|&&|\|\||[-+*/<>()\[\],=])""",
-    re.VERBOSE,
-)
 _COMPARING = ("==", "!=", "<", "<=", ">", ">=")
 _NUMERIC = ("abs", "exp", "log", "log2", "log10", "sqrt")
 _FUNCTIONS = (*_NUMERIC, "is_missing", "pick", "mean_of", "round", "column")
 _WORDS = ("and", "or", "not", "in")
-_INSTEAD = {
-    "=": "Write == to compare.",
-    "**": "Powers are not in the grammar; write x * x, or exp and log.",
-    "^": "Powers are not in the grammar; write x * x, or exp and log.",
-    "&&": "Write 'and'.",
-    "&": "Write 'and'.",
-    "||": "Write 'or'.",
-    "|": "Write 'or'.",
-    "!": "Write 'not', or != to compare.",
-    "%": "Remainders and per cent are not in the grammar.",
-    "~": "Write 'not'.",
-    "'": "A quote is opened and never closed.",
-    '"': "A quote is opened and never closed.",
-    "{": "Lists stand in square brackets.",
-    ".": "A column whose name holds a dot is written column('its name').",
-}
-
-
-@dataclass(frozen=True)
-class _Token:
-    kind: str
-    text: str
-    at: int
 
 
 def read(text: str) -> Node:
@@ -71,46 +39,13 @@ def read(text: str) -> Node:
         raise ExpressionFault(f"it has {len(text)} characters; at most {LONGEST} are allowed")
     if not text.strip():
         raise ExpressionFault("it is empty")
-    return _Reader(_tokens(text)).whole()
-
-
-def _tokens(text: str) -> list[_Token]:
-    found: list[_Token] = []
-    at = 0
-    while at < len(text):
-        if text[at] in " \n":
-            at += 1
-            continue
-        match = _TOKEN.match(text, at)
-        if match is None:
-            _refuse(text, at)
-        found.append(_Token(str(match.lastgroup), match.group(), at))
-        at = match.end()
-    if len(found) > LARGEST:
-        raise ExpressionFault(f"it has {len(found)} words and signs; at most {LARGEST} are allowed")
-    return [*found, _Token("end", "", len(text))]
-
-
-def _refuse(text: str, at: int) -> NoReturn:
-    character = text[at]
-    if character.isdigit() or (character == "." and text[at + 1 : at + 2].isdigit()):
-        word = re.match(r"[\w.]+", text[at:])
-        raise ExpressionFault(
-            f"'{word.group() if word else character}' is not a number; "
-            "a column whose name begins with a digit is written column('its name')"
-        )
-    if character.isalpha():
-        word = re.match(r"\w+", text[at:])
-        name = word.group() if word else character
-        raise ExpressionFault(f"a name with other letters than a to z is written column('{name}')")
-    hint = _INSTEAD.get(character, "")
-    raise ExpressionFault(f"{character!r} at character {at + 1} has no meaning in an expression. {hint}".rstrip())
+    return _Reader(tokens(text)).whole()
 
 
 class _Reader:
     """Reads tokens from left to right; one method for each level of the grammar, the loosest first."""
 
-    def __init__(self, tokens: list[_Token]) -> None:
+    def __init__(self, tokens: list[Token]) -> None:
         self._tokens = tokens
         self._next = 0
         self._depth = 0
@@ -122,10 +57,10 @@ class _Reader:
         return node
 
     @property
-    def _token(self) -> _Token:
+    def _token(self) -> Token:
         return self._tokens[self._next]
 
-    def _take(self) -> _Token:
+    def _take(self) -> Token:
         token = self._token
         self._next += 1
         return token
@@ -140,7 +75,7 @@ class _Reader:
 
     def _unexpected(self, expected: str) -> NoReturn:
         token = self._token
-        hint = _INSTEAD.get(token.text, "") if token.kind == "sign" else ""
+        hint = INSTEAD.get(token.text, "") if token.kind == "sign" else ""
         if token.kind == "end":
             raise ExpressionFault(f"{expected} where it ends")
         raise ExpressionFault(f"{expected} where {token.text!r} stands, at character {token.at + 1}. {hint}".rstrip())

@@ -91,7 +91,7 @@ class Exact(float):
 def _fraction(written: Any) -> Fraction:
     if isinstance(written, (int, float)) and not isinstance(written, bool):
         return Fraction(repr(written))
-    if isinstance(written, str) and re.fullmatch(r"\d{1,9} ?/ ?[1-9]\d{0,8}", written):
+    if isinstance(written, str) and re.fullmatch(r"[0-9]{1,9} ?/ ?[1-9][0-9]{0,8}", written):
         return Fraction(written.replace(" ", ""))
     raise refused("must be a number, or a fraction such as 1/3")
 
