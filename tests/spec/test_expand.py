@@ -115,6 +115,29 @@ def test_many_events() -> None:
     ]
 
 
+def test_each_family_has_the_promise_that_applies() -> None:
+    form = "    hypotheses: [{id: %s, test: one_sample_t, outcome: %s, alternative: above}]\n"
+    text = (
+        HEAD
+        + form % ("rusty", "rust")
+        + (
+            "  - id: wear\n    question: Is it deep?\n    procedure: holm\n"
+            "    promise: {criterion: familywise_error_rate, level: 1/40, level_is: one_sided}\n"
+        )
+        + form % ("deep", "depth")
+    )
+    coats, wear = read_spec(text.encode(), Path("railings.yaml")).families
+    assert (coats.promise.criterion, coats.promise.level, coats.stands_apart) == ("false_discovery_rate", 0.1, False)
+    assert (wear.promise.criterion, wear.promise.level, wear.stands_apart) == ("familywise_error_rate", 0.025, True)
+    study = "promise: {criterion: false_discovery_rate, level: 0.1, level_is: two_sided}\n"
+    own = "    promise: {criterion: false_discovery_rate, level: 0.2, level_is: two_sided}\n"
+    apart = text.replace(study, "promise: {across_families: separate}\n").replace(
+        "  - id: wear", own + "  - id: wear", 1
+    )
+    families = read_spec(apart.encode(), Path("railings.yaml")).families
+    assert [(family.promise.level, family.stands_apart) for family in families] == [(0.2, True), (0.025, True)]
+
+
 SUPPLIED = (
     "    hypotheses_from:\n      test: supplied_p\n      each: label\n      p: p_value\n      estimate: effect\n"
     "      origin: the laboratory, with its own program\n      planned: 3\n"

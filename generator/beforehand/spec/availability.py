@@ -10,10 +10,9 @@ from beforehand.multiplicity.contract import PROCEDURES
 from beforehand.spec.places import Finding, Path
 
 TESTS = (
-    "ancova", "binomial", "brunner_munzel", "cluster_t", "crossover_t", "crossover_ratio", "equal_variances",
-    "generation_wilcoxon", "interaction", "left_censored_rank", "log_rank", "mcnemar", "mixed_model", "permutation",
-    "poisson_rate", "proportional_hazards", "rate_ratio", "risk_difference", "risk_ratio", "sign", "spearman",
-    "t_contrast", "trend",
+    "analysis_of_covariance", "binomial_exact", "brunner_munzel", "chi_square", "cluster_t", "correlation",
+    "crossover_ratio", "crossover_t", "interaction", "left_censored_rank", "log_rank", "mcnemar", "mixed_model",
+    "permutation", "proportional_hazards", "rate_ratio", "risk_difference", "risk_ratio", "sign", "t_contrast", "trend",
 )  # fmt: skip
 PROCEDURES_LATER = (
     "all_or_none", "benjamini_yekutieli", "closed_testing", "dunnett", "exceedance_step_down", "fallback",

@@ -1,7 +1,6 @@
 """Whether a data set fits itself: its columns, conditions, derived columns, sets."""
 
 from collections.abc import Iterator
-from functools import lru_cache
 
 from beforehand.spec.availability import SUFFIXES, SUFFIXES_LATER
 from beforehand.spec.expressions import ExpressionFault, Known, parse
@@ -36,21 +35,15 @@ def file_columns(data_set: DataSet) -> dict[str, Known]:
     return {name: Known(_KINDS[column.kind], column.levels) for name, column in data_set.columns.items()}
 
 
-@lru_cache(maxsize=4096)
-def _kind(text: str, known: tuple[tuple[str, Known], ...]) -> ValueKind | str:
-    try:
-        return parse(text).kind(dict(known))
-    except ExpressionFault as fault:
-        return f"!{fault.text}"
-
-
 def condition(text: str, known: dict[str, Known], path: Path, name: str) -> Iterator[Finding]:
     """Check that a condition fits the columns and can be true or false."""
-    kind = _kind(text, tuple(known.items()))
-    if kind.startswith("!"):
-        yield Finding(path, f"the 'where' of {name}: {kind[1:]}")
-    elif kind != "truth":
-        yield Finding(path, f"the 'where' of {name} gives a {kind}, not a condition. Write a comparison.")
+    try:
+        kind = parse(text).kind(known)
+    except ExpressionFault as fault:
+        yield Finding(path, f"the 'where' of {name}: {fault.text}")
+    else:
+        if kind != "truth":
+            yield Finding(path, f"the 'where' of {name} gives a {kind}, not a condition. Write a comparison.")
 
 
 def column(written: str, known: dict[str, Known], path: Path, name: str) -> Iterator[Finding]:

@@ -9,6 +9,9 @@ from beforehand.spec.options import faults_of
 from beforehand.spec.places import Finding
 
 
+_SIDES = ("above", "below")
+
+
 def check_null(block: Block, document: Document) -> Iterator[Finding]:
     """Check the null hypothesis, its side and its margin."""
     written, form = block.written, block.null.form
@@ -43,13 +46,17 @@ def check_direction(block: Block, document: Document) -> Iterator[Finding]:
         if direction is not None:
             yield Finding(path, f"{block.name} has 'claim_direction', and its test has one side already. Take it out.")
         return
-    if promise_of(document, block.family).level_is == "one_sided" and direction not in ("above", "below"):
+    if promise_of(document, block.family).level_is == "one_sided" and direction not in _SIDES:
         yield Finding(
             block.path if direction is None else path,
             f"{block.name} is two-sided under a one-sided level. Say claim_direction: above or below, "
             "so that the p of that side is used, or choose another 'alternative'.",
         )
         return
+    if isinstance(written, HypothesesFrom) and block.supplied and written.estimate is None and direction in _SIDES:
+        yield Finding(
+            block.path, f"{block.name} needs the key 'estimate': without its sign a two-sided p has no direction"
+        )
     because = _must_have_direction(block, document)
     if direction is None and because:
         yield Finding(
