@@ -8,7 +8,6 @@ from beforehand.spec.model import Comparisons, Document, HypothesesFrom
 from beforehand.spec.options import faults_of
 from beforehand.spec.places import Finding
 
-
 _SIDES = ("above", "below")
 
 
