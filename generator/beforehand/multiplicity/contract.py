@@ -19,6 +19,11 @@ FWER: Criterion = "familywise_error_rate"
 FDR: Criterion = "false_discovery_rate"
 PER_COMPARISON: Criterion = "per_comparison_error_rate"
 
+# No error at all, with probability 1 - a, is also fewer than k errors and a false discovery proportion of 0.
+IMPLIED_BY_FWER: tuple[Criterion, ...] = (
+    "k_familywise_error_rate", FDR, "false_discovery_exceedance", PER_COMPARISON,
+)  # fmt: skip
+
 WHOLE = "whole"
 """The replay needs nothing but p (and what the spec says): no ingredient is taken as recorded."""
 
@@ -72,12 +77,14 @@ def each_alone(p: Ascending, *, factor: Vector) -> Steps:
 class Ordered:
     """p-values with their ascending order, which several procedures may share."""
 
-    p: Vector
+    ascending: Ascending
+    """The p-values in ascending order."""
     order: NDArray[np.intp]
+    """Where each of them stood; equal values keep the order in which they came."""
 
     @classmethod
     def of(cls, p: "ArrayLike | Ordered") -> "Ordered":
-        """Check and sort p-values once (stable: equal values keep the order in which they came).
+        """Check p-values and sort them once.
 
         Raises
         ------
@@ -86,23 +93,31 @@ class Ordered:
         """
         if isinstance(p, Ordered):
             return p
-        values = np.array(p, dtype=np.float64)  # a copy: the caller's array is never touched
+        values = np.asarray(p, dtype=np.float64)
         if values.ndim != 1:
             raise ValueError(f"p-values of one family are a one-dimensional array; found {values.ndim} dimensions")
         if not np.all((values >= 0) & (values <= 1)):
             raise ValueError("p-values lie between 0 and 1, and none is missing: a missing result counts as p = 1")
-        return cls(values, np.argsort(values, kind="stable"))
-
-    @property
-    def ascending(self) -> Ascending:
-        """The p-values in ascending order."""
-        return self.p[self.order]
+        order = _stable_order(values)
+        return cls(values[order], order)
 
     def unsorted(self, by_rank: NDArray[Any]) -> NDArray[Any]:
         """Bring values by rank back into the order in which the p-values came."""
         result = np.empty_like(by_rank)
         result[self.order] = by_rank
         return result
+
+
+def _stable_order(values: Vector) -> NDArray[np.intp]:
+    """Sort quickly, then put equal values back into the order in which they came: less work than a stable sort."""
+    order = np.argsort(values)
+    ascending = values[order]
+    differs = ascending[1:] != ascending[:-1]
+    if np.all(differs):
+        return order
+    run_of_equals = np.concatenate([[0], np.cumsum(differs)])
+    keys: NDArray[np.intp] = np.sort(run_of_equals * values.size + order)
+    return keys % values.size
 
 
 @dataclass(frozen=True, kw_only=True)

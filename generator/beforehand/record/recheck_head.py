@@ -77,7 +77,7 @@ def part(mapping: Any, key: str, kind: Any) -> Any:
 
 
 def read_families(record: Any) -> list[dict[str, Any]]:
-    """Give the families in their order."""
+    """Give the families in the order in which they are tested: that of `order`, or as they stand."""
     part(record, "scheme", str)
     families: list[dict[str, Any]] = part(record, "families", list)
     for family in families:
@@ -91,7 +91,9 @@ def read_families(record: Any) -> list[dict[str, Any]]:
         part(family, "level", (int, float))
         if not all(isinstance(member, str) for member in part(family, "members", list)):
             raise Unreadable(f"record.json: the members of family {family['id']!r} are not ids")
-    return families
+    order = part(record, "order", list) if "order" in record else []
+    place = {name: i for i, name in enumerate(order)}
+    return sorted(families, key=lambda family: place.get(family["id"], len(place)))
 
 
 def read_rows(text: str) -> list[dict[str, str]]:
