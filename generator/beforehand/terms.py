@@ -54,7 +54,7 @@ ValueKind = Literal["number", "text", "date", "truth"]
 MissingMethod = Literal["complete_cases", "fail", "worst_case", "best_case", "multiple_imputation"]
 
 # Every word that a spec may answer to: the warning rules of snooping, built or not.
-WARNING_RULES: tuple[str, ...] = (
+WARNING_NAMES: tuple[str, ...] = (
     "assumed_correlation_used", "baseline_tests", "cannot_reject", "claim_logic_mismatch",
     "contrast_fitted_to_means", "covariates_screened", "criterion_changed", "cut_point_searched",
     "dependence_doubtful", "direction_changed", "exclusions_changed", "extreme_pair_picked", "families_regrouped",

@@ -8,6 +8,7 @@ from pydantic import BaseModel, ValidationError
 from beforehand.spec import availability
 from beforehand.spec.model import Document, Exact, Family, Hypothesis, Keys, NullHypothesis
 from beforehand.spec.model.walk import fields_of, models_at, models_below
+from beforehand.terms import WARNING_NAMES
 
 
 def every_model() -> list[type[BaseModel]]:
@@ -82,6 +83,12 @@ def test_what_is_built_is_not_listed_as_not_built() -> None:
 
     assert not set(availability.TESTS) & set(STATISTICAL_TESTS)
     assert not set(availability.PROCEDURES_LATER) & set(PROCEDURES)
+
+
+def test_every_warning_rule_can_be_answered() -> None:
+    from beforehand.snooping.contract import WARNING_RULES
+
+    assert set(WARNING_RULES) <= set(WARNING_NAMES)
 
 
 def test_a_path_leads_to_its_model() -> None:

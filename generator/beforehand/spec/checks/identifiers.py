@@ -6,7 +6,7 @@ from beforehand.spec.checks.data_sets import columns_of
 from beforehand.spec.hints import nearest
 from beforehand.spec.model import Document, EventOutcome, PairOutcome
 from beforehand.spec.places import Finding, Path
-from beforehand.terms import WARNING_RULES
+from beforehand.terms import WARNING_NAMES
 
 
 def _ids(document: Document) -> Iterator[tuple[str, str, Path]]:
@@ -46,10 +46,10 @@ def check_answers(document: Document) -> Iterator[Finding]:
     families = tuple(f"{family.id}/" for family in document.families)
     for place, answer in enumerate(document.answers):
         path: Path = ("answers", place)
-        if answer.warning not in WARNING_RULES:
+        if answer.warning not in WARNING_NAMES:
             yield Finding(
                 (*path, "warning"),
-                f"no warning rule is called '{answer.warning}'. {nearest(answer.warning, WARNING_RULES, 'name')}",
+                f"no warning rule is called '{answer.warning}'. {nearest(answer.warning, WARNING_NAMES, 'name')}",
             )
         if answer.about and answer.about not in ids and not answer.about.startswith(families):
             yield Finding(
