@@ -163,9 +163,7 @@ def decimals_for(lower: float, upper: float, estimate: float = 0.0, nulls: tuple
     """
     ends = [end for end in (lower, upper) if math.isfinite(end)]
     width = max(ends) - min(ends) if len(ends) == 2 else abs(2 * ((ends or [0.0])[0] - estimate))
-    if not width or not math.isfinite(width):
-        return 3
-    decimals = min(10, max(0, 1 - _size(width / 3)))
+    decimals = min(10, max(0, 1 - _size(width / 3))) if width and math.isfinite(width) else 3
     while decimals < 10 and any(_crosses(end, null, decimals) for end in ends for null in nulls):
         decimals += 1
     return decimals

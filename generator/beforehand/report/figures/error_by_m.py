@@ -9,7 +9,7 @@ from beforehand.spelling import integer, percent
 
 # The numbers of hypotheses that have a bar, where the record holds them; this study's m has one always.
 STEPS = (1, 2, 3, 5, 10, 20, 40, 100, 200, 500, 1000)
-NO_MORE_FROM = 0.995
+ALMOST_SURE = 0.99
 
 
 class ErrorByM(TypedDict):
@@ -35,7 +35,7 @@ class Step(TypedDict):
 def draw(numbers: ErrorByM) -> Iterable[Figure]:
     """Draw the figure."""
     level, m = percent(numbers["level"]), integer(numbers["this_m"])
-    independent, at_most = percent(numbers["this_independent"], 2), percent(numbers["this_at_most"], 2)
+    independent, at_most = _chance(numbers["this_independent"]), _chance(numbers["this_at_most"])
     steps = _steps(numbers)
     yield Figure(
         key="error_by_m",
@@ -52,9 +52,13 @@ def draw(numbers: ErrorByM) -> Iterable[Figure]:
         ),
         table=(
             ("Number of hypotheses (m)", "Independent tests", "At most"),
-            *((integer(s["m"]), percent(s["independent"]), percent(s["at_most"])) for s in steps),
+            *((integer(one["m"]), _chance(one["independent"]), _chance(one["at_most"])) for one in steps),
         ),
     )
+
+
+def _chance(share: float) -> str:
+    return percent(share, 2) if share <= ALMOST_SURE or share == 1 else f"> {percent(ALMOST_SURE)}"
 
 
 def _steps(numbers: ErrorByM) -> list[Step]:
@@ -67,7 +71,7 @@ def _steps(numbers: ErrorByM) -> list[Step]:
         m=numbers["this_m"], independent=numbers["this_independent"], at_most=numbers["this_at_most"]
     )
     steps = [found[m] for m in sorted(found)]
-    full = [step for step in steps if step["independent"] > NO_MORE_FROM and step["m"] > numbers["this_m"]]
+    full = [step for step in steps if step["independent"] > ALMOST_SURE and step["m"] > numbers["this_m"]]
     return [step for step in steps if step not in full[1:]]
 
 
@@ -84,7 +88,7 @@ def _svg(steps: list[Step], numbers: ErrorByM) -> str:
         axes.plot([step["at_most"]], [y], marker="|", color=INK if here else QUIET, markersize=6, zorder=2)
         axes.barh(y, step["independent"], height=0.56, color=ACCENT if here else HAIR, zorder=3)
         axes.annotate(
-            percent(step["independent"], 2), (max(step["at_most"], step["independent"]), y), xytext=(6, 0),
+            _chance(step["independent"]), (max(step["at_most"], step["independent"]), y), xytext=(6, 0),
             textcoords="offset points", va="center", color=INK if here else QUIET,
         )  # fmt: skip
     axes.axvline(numbers["level"], color=INK, linewidth=0.9, linestyle=(0, (4, 3)), zorder=4)

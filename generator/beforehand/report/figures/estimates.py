@@ -24,7 +24,8 @@ if TYPE_CHECKING:
     from matplotlib.axes import Axes
 
 # More rows than this don't fit on a page.
-MOST = 24
+MOST = 20
+AIRY = 12
 TOLD = 8
 NAMED = 4
 
@@ -105,7 +106,8 @@ def _svg(panels: list[Panel]) -> str:
 
 def _height(panel: Panel) -> float:
     lines = max(broken(one["label"]).count("\n") + 1 for one in panel)
-    return len(panel) * max(0.15 + 0.15 * lines, 0.4 if _has_matching(panel) else 0) + 0.68
+    air = 0.15 if len(panel) <= AIRY else 0.1
+    return len(panel) * max(air + 0.15 * lines, 0.4 if _has_matching(panel) else 0) + 0.68
 
 
 def _has_matching(shown: list[Estimate]) -> bool:

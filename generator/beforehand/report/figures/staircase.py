@@ -78,10 +78,12 @@ def _figure(family: str, stairs: Staircase) -> Figure:
 
 
 def _caption(family: str, stairs: Staircase) -> str:
-    shapes = legend_words([one["state"] for one in stairs["points"]])
+    points = stairs["points"]
+    shapes = legend_words([one["state"] for one in points])
+    beyond = "; at the left edge: smaller p" if min(one["p"] for one in points) < _limits(points)[0] else ""
     return (
         f"p-values of family {family} in ascending order against the thresholds of {stairs['procedure_title']}; "
-        f"tinted: at or below the threshold of its rank; {shapes}."
+        f"tinted: at or below the threshold of its rank; {shapes}{beyond}."
     )
 
 

@@ -21,7 +21,7 @@ NOT_COMPUTED = (
 def firmness(record: Record, lines: tuple[Line, ...]) -> Plain:
     """Write the section."""
     compared = tuple(line for line in lines if line.state in COMPARED)
-    shown = foremost(compared, 2 * IN_FULL)
+    shown = foremost(compared, IN_FULL)
     part = f" Shown are {len(shown)} of {integer(len(compared))}; {section('appendix')} has all."
     return Plain(
         heading=HEADINGS["firmness"],

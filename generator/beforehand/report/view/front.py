@@ -45,6 +45,7 @@ def front(record: Record, lines: tuple[Line, ...], results_sha256: str) -> Front
         shown=_findings(islice(shown, SHOWN_ON_PAGE_ONE)),
         more_shown=_more(len(shown)),
         promises=criteria.promises(record),
+        alarms=_alarms(record),
         families=families_table(record),
         standing=(Fact("Sealed plan", NOT_SEALED), Fact("Warnings", _warnings(record))),
         checksums=_checksums(record, results_sha256),
@@ -69,7 +70,7 @@ def _more(shown: int) -> str:
     more = shown - SHOWN_ON_PAGE_ONE
     if more < 1:
         return ""
-    return f"{integer(more)} more rejected {'hypothesis' if more == 1 else 'hypotheses'}: {section('results')}."
+    return f"{integer(more)} more in {section('results')} and {section('appendix')}."
 
 
 def _states(families: Iterable[FamilyRecord]) -> dict[State, int]:
@@ -86,6 +87,11 @@ def _reading(record: Record) -> str:
         count = "1 objection" if objections == 1 else f"{objections} objections"
         return f"Declared confirmatory; {count} in {section('warnings')} take that label from what they are about."
     return ""
+
+
+def _alarms(record: Record) -> tuple[str, ...]:
+    found = {family.id: criteria.alarm(family) for family in record.families}
+    return tuple(f"Family {name}: {alarm[:1].lower()}{alarm[1:]}" for name, alarm in found.items() if alarm)
 
 
 def _warnings(record: Record) -> str:

@@ -119,6 +119,7 @@ class Front:
     shown: tuple[Finding, ...]
     more_shown: str
     promises: tuple[str, ...]
+    alarms: tuple[str, ...]
     families: Table
     standing: tuple[Fact, ...]
     """The sealed plan and the warnings, in a sentence each."""

@@ -50,15 +50,19 @@ def _sentences(record: Record) -> tuple[str, ...]:
     found = list(criteria.promises(record))
     if len(record.families) > 1:
         found.append(criteria.SCHEMES[record.scheme])
-    if record.scheme == "separate" and len(record.families) > 1:
+    if record.scheme == "separate" and len(record.families) > 1 and all(map(_is_familywise, record.families)):
         total = min(1.0, sum(family.level for family in record.families))
-        found.append(f"Taken together, the levels of the families add up to {percent(total)}.")
+        found.append(f"The chance of a false rejection in any of the families can reach {percent(total)}.")
     found.append(
         "An adjusted p is the smallest level of the promise at which the hypothesis would be rejected; it is compared "
         "with the level. Where the promise covers the whole study, the adjusted p of the study decides, otherwise "
         "that of the family; the other one is printed in grey."
     )
     return tuple(found)
+
+
+def _is_familywise(family: FamilyRecord) -> bool:
+    return family.promise.criterion == "familywise_error_rate"
 
 
 def _chain(record: Record) -> tuple[Fact, ...]:

@@ -21,10 +21,10 @@ def claim(line: Line) -> str:
 
 
 def lead(line: Line) -> str:
-    """Give the state as the first words of a finding; only a confirmatory, adjusted family shows anything."""
+    """Give the state as the first words of a finding; only a confirmatory family-wise promise lets a claim be shown."""
     confirmed = line.intent == "confirmatory" and line.family.promise.criterion == "familywise_error_rate"
     words: dict[State, str] = {
-        "rejected": "Shown" if confirmed else "Rejected",
+        "rejected": "Shown" if confirmed else "Indicated",
         "rejected_against_claim": "Against the claim",
         "not_rejected": "Not shown",
     }
@@ -43,8 +43,6 @@ def _quoted(line: Line) -> str:
 
 
 def _rejected(line: Line) -> str:
-    if line.intent == "exploratory":
-        return f"{claim(line)}. A lead for a later study to confirm."
     return f"{claim(line)}."
 
 
@@ -111,11 +109,11 @@ def finding(line: Line) -> Finding:
 
 
 def family_verdict(states: dict[State, int]) -> str:
-    """Count the states: "2 of 3 hypotheses rejected, 1 not rejected"."""
+    """Count the states: "3 null hypotheses: 2 rejected; 1 not rejected."."""
     total = sum(states.values())
     if not total:
-        return "No hypothesis."
+        return "No hypotheses."
     words = STATE_WORDS | {"no_result": "without a result"}
     kinds = [f"{integer(count)} {words[state]}" for state in STATE_WORDS if (count := states.get(state, 0))]
-    hypotheses = "1 hypothesis" if total == 1 else f"{integer(total)} hypotheses"
+    hypotheses = "1 null hypothesis" if total == 1 else f"{integer(total)} null hypotheses"
     return f"{hypotheses}: {'; '.join(kinds)}."
