@@ -56,5 +56,8 @@ def test_over_the_bound_both_numbers_are_named() -> None:
 
 
 def test_another_decision_stops_whatever_the_distance() -> None:
-    with pytest.raises(TwoComputationsDisagree):
-        Agreement().same("a", "decision", "rejected", "not_rejected")
+    agreement = Agreement()
+    assert agreement.same("a", "decision", "rejected", "rejected")
+    assert not agreement.same("b", "decision", "rejected", "not_rejected")
+    with pytest.raises(TwoComputationsDisagree, match="b: decision rejected and not_rejected"):
+        agreement.settle()

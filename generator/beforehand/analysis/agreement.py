@@ -50,6 +50,8 @@ class Agreement:
     """All numbers that a run computed twice."""
 
     compared: list[Comparison] = field(default_factory=list)
+    different: list[Disagreement] = field(default_factory=list)
+    """What had to be the same and is not."""
 
     def numbers(
         self, about: str, quantity: str, first: float, second: float, *, bound: float, floor: float = P_FLOOR
@@ -58,18 +60,21 @@ class Agreement:
         difference = relative_difference(first, second, floor=floor)
         self.compared.append(Comparison(about, quantity, first, second, bound, difference))
 
-    def same(self, about: str, quantity: str, first: object, second: object) -> None:
+    def same(self, about: str, quantity: str, first: object, second: object) -> bool:
         """Compare what has to be the same: a count, a decision, whether there is a result."""
         if first != second:
-            raise TwoComputationsDisagree((Disagreement(about, quantity, str(first), str(second), 0.0),))
+            self.different.append(Disagreement(about, quantity, str(first), str(second), 0.0))
+        return first == second
 
     def settle(self) -> tuple[AgreementRecord, ...]:
         """Give the largest disagreement of each quantity; raises when any is over its bound."""
-        over = [c for c in self.compared if not c.agrees]
-        if over:
-            raise TwoComputationsDisagree(
-                tuple(Disagreement(c.about, c.quantity, repr(c.first), repr(c.second), c.bound) for c in over)
-            )
+        over = [
+            Disagreement(c.about, c.quantity, repr(c.first), repr(c.second), c.bound)
+            for c in self.compared
+            if not c.agrees
+        ]
+        if over or self.different:
+            raise TwoComputationsDisagree((*self.different, *over))
         quantities = dict.fromkeys(c.quantity for c in self.compared)
         return tuple(self._record(quantity) for quantity in quantities)
 

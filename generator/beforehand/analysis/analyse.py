@@ -8,7 +8,7 @@ import threadpoolctl  # type: ignore[import-untyped]  # it ships no types
 from beforehand.analysis.agreement import P_FLOOR, Agreement, bound_near
 from beforehand.analysis.computed import Computed, compute
 from beforehand.analysis.drawn import drawn
-from beforehand.analysis.families import EnteredFamily, JudgedFamily, judge, scheme_of
+from beforehand.analysis.families import EnteredFamily, JudgedFamily, judge, order_of, scheme_of
 from beforehand.analysis.records import (
     family_record,
     hypothesis_records,
@@ -69,6 +69,7 @@ def analyse(spec: Spec, dataset: Dataset, *, progress: Callable[[str], None] = l
         study=study_record(spec),
         promise=_study_promise(spec),
         scheme=scheme_of(spec),
+        order=tuple(order_of(spec)),
         inputs=inputs,
         rows=tuple(rows_record(one) for one in dataset.tables.values()),
         families=families,
@@ -134,8 +135,8 @@ def _enter(family: PlannedFamily, computed: list[Computed], seconds: list[Second
 def _compare(one: Computed, second: SecondResult, level: float, agreement: Agreement) -> None:
     """Compare the two computations of one hypothesis, number by number."""
     about, first, again = one.hypothesis.id, one.result, second.result
-    agreement.same(about, "whether there is a result", type(first).__name__, type(again).__name__)
     agreement.same(about, "analysed units", first.n, again.n)
+    agreement.same(about, "whether there is a result", type(first).__name__, type(again).__name__)
     if isinstance(first, NotComputed) or isinstance(again, NotComputed):
         return
     agreement.same(about, "side of the claim", one.side_agrees, second.side_agrees)

@@ -9,10 +9,11 @@ from numpy.typing import NDArray
 from beforehand.analysis.agreement import Agreement, bound_near
 from beforehand.multiplicity.contract import PROCEDURES, Ordered, Procedure, Steps, Vector
 from beforehand.multiplicity.scheme import SCHEMES, FamilyDecision, FamilyResult
-from beforehand.multiplicity.survival import largest_family
+from beforehand.multiplicity.survival import largest_families
 from beforehand.spec.planned import PlannedFamily, Spec
 from beforehand.terms import AcrossFamilies, State
 
+REJECTED: tuple[State, ...] = ("rejected", "rejected_against_claim")
 ADJUSTED_BOUND = 1e-9
 """Largest relative disagreement of an adjusted p with its replay (closed forms)."""
 
@@ -61,7 +62,7 @@ def scheme_of(spec: Spec) -> AcrossFamilies:
 def judge(spec: Spec, entered: tuple[EnteredFamily, ...], agreement: Agreement) -> tuple[JudgedFamily, ...]:
     """Judge every family, in the order of the spec."""
     results = {e.family.id: _result(e) for e in entered}
-    together = _order(spec)
+    together = order_of(spec)
     decisions: dict[str, FamilyDecision] = {}
     by_id = {e.family.id: e for e in entered}
     groups = [(scheme_of(spec), together), ("separate", [e.family.id for e in entered if e.family.id not in together])]
@@ -72,7 +73,7 @@ def judge(spec: Spec, entered: tuple[EnteredFamily, ...], agreement: Agreement) 
     return tuple(_judged(e, decisions[e.family.id]) for e in entered)
 
 
-def _order(spec: Spec) -> list[str]:
+def order_of(spec: Spec) -> list[str]:
     """Name the families that the study's promise covers, in the order in which they are tested."""
     covered = [family.id for family in spec.families if not family.stands_apart]
     return [name for name in spec.document.promise.order or covered if name in covered]
@@ -98,19 +99,12 @@ def _judged(entered: EnteredFamily, decision: FamilyDecision) -> JudgedFamily:
         factor=ordered.unsorted(steps.factor),
         product=ordered.unsorted(steps.product),
         from_rank=ordered.unsorted(steps.taken_from + 1),
-        survives_up_to=_survival(entered, decision, ordered),
+        survives_up_to=np.where(
+            [state in REJECTED for state in decision.states],
+            largest_families(entered.procedure, ordered, level=entered.level),
+            0,
+        ),
     )
-
-
-def _survival(entered: EnteredFamily, decision: FamilyDecision, ordered: Ordered) -> NDArray[np.int64]:
-    """Give m* of every rejection; equal p-values share it, and it falls with p, so few are computed."""
-    known: dict[float, int] = {}
-    for index, state in enumerate(decision.states):
-        p = float(entered.p[index])
-        if state in ("rejected", "rejected_against_claim") and p not in known:
-            known[p] = largest_family(entered.procedure, ordered, index, level=entered.level)
-    rejected = [state in ("rejected", "rejected_against_claim") for state in decision.states]
-    return np.array([known[float(p)] if yes else 0 for p, yes in zip(entered.p, rejected, strict=True)], dtype=np.int64)
 
 
 def _judge_again(

@@ -9,7 +9,7 @@ from beforehand.analysis.computed import Computed
 from beforehand.analysis.families import JudgedFamily
 from beforehand.analysis.wording import alternative_in_words, labels, null_in_words, outcome_name, sides, unit_of
 from beforehand.data.dataset import Dataset
-from beforehand.data.sets import missing_values
+from beforehand.data.sets import missing_values, overlaps
 from beforehand.data.table import Table
 from beforehand.hypothesis_tests.contract import NotComputed, Outcome
 from beforehand.hypothesis_tests.nulls import alternative_in_symbols, null_in_symbols
@@ -23,6 +23,7 @@ from beforehand.record.model import (
     InputRecord,
     MethodRecord,
     MissingRecord,
+    OverlapRecord,
     PromiseRecord,
     Results,
     RowsRecord,
@@ -83,6 +84,7 @@ def rows_record(table: Table) -> RowsRecord:
                 rows=rule.counts.rows,
                 by_group=rule.counts.by_group,
                 undecided=len(rule.undecided),
+                undecided_lines=rule.undecided,
             )
             for rule in flow.exclusions
         ),
@@ -99,8 +101,20 @@ def rows_record(table: Table) -> RowsRecord:
                 principle=one.principle,
                 rows=one.counts.rows,
                 by_group=one.counts.by_group,
+                undecided=len(one.undecided),
+                undecided_lines=one.undecided,
             )
             for one in table.sets
+        ),
+        overlaps=tuple(
+            OverlapRecord(
+                first=one.first,
+                second=one.second,
+                both=one.both.rows,
+                only_first=one.only_first.rows,
+                only_second=one.only_second.rows,
+            )
+            for one in overlaps(table)
         ),
         derived={name: rule.is_ for name, rule in declared.derive.items()},
     )
@@ -178,6 +192,7 @@ def _hypothesis(spec: Spec, family: PlannedFamily, computed: Computed, label: st
         missing_mechanism=missing.mechanism or "",
         options=dict(hypothesis.options),
         summaries=_summaries(computed),
+        undecided=computed.samples.undecided,
         remarks=result.remarks if isinstance(result, Outcome) else (),
         no_result_because=result.reason if isinstance(result, NotComputed) else "",
         origin=(family.from_data.origin or "") if family.from_data else "",

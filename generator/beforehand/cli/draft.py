@@ -31,7 +31,7 @@ def draft(data: Path | None, out: Path | None) -> int:
     out.write_text(text, "utf-8")
     (out.parent / "beforehand.schema.json").write_text(schema, "utf-8")
     click.echo(f"Wrote {out.name} and beforehand.schema.json in {out.parent}.")
-    click.echo(f"Replace the words in CAPITALS, then: beforehand check {out.name}")
+    click.echo(f"What is left to write, line by line: beforehand check {out.name}")
     return 0
 
 

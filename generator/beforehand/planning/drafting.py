@@ -25,8 +25,7 @@ class DraftedColumn:
     def line(self) -> str:
         """Write the column as a line of the spec."""
         levels = f", levels: [{', '.join(quoted(level) for level in self.levels)}]" if self.levels else ""
-        unit = ", unit: UNIT" if self.kind == "number" else ""
-        return f"      {quoted(self.name)}: {{kind: {self.kind}{unit}{levels}}}"
+        return f"      {quoted(self.name)}: {{kind: {self.kind}{levels}}}"
 
 
 def draft(data: Path | None, *, folder: Path) -> str:
@@ -100,13 +99,13 @@ def _text(path: str, columns: list[DraftedColumn], codes: tuple[str, ...]) -> st
 
 TEMPLATE = """\
 # yaml-language-server: $schema=./beforehand.schema.json
-# A starting point, made from the names in the file and nothing else. Words in CAPITALS are yours to replace;
-# lines that begin with # can go. Then: beforehand check SPEC
+# A starting point, made from the names in the file and nothing else. What is empty is yours to write, what is there
+# is yours to change, and what begins with # can go. `beforehand check` names what is left to write, line by line.
 beforehand: 1
 
 study:
-  title: TITLE
-  identifier: IDENTIFIER           # stands on every page of the report
+  title:
+  identifier:                      # stands on every page of the report
   intent: confirmatory             # or: exploratory
   # dated: 2031-03-02              # printed as it stands; no clock is read
   # protocol: the document that this spec carries out
@@ -114,15 +113,15 @@ study:
 data:
   - id: main
     file: {path}
-    one_row_is: ONE ROW
+    one_row_is:
     identified_by: [{key}]         # must be unique; rows are sorted by it
     missing_codes: [{codes}]       # exactly these texts mean "missing", nothing else does
-    columns:
+    columns:                       # a number may have unit: kg and between: [0, 100]
 {columns}
     # exclude:
-    #   - {{where: "COLUMN > 100", because: REASON, known_at: before_allocation}}
+    #   - {{where: "COLUMN > 100", because: the reason, known_at: before_allocation}}
     # derive:
-    #   log_value: {{is: log(COLUMN), unit: log UNIT}}
+    #   log_value: {{is: log(COLUMN)}}
 
 promise:
   criterion: familywise_error_rate # or: false_discovery_rate
@@ -131,11 +130,11 @@ promise:
 
 families:
   - id: main_question
-    question: QUESTION
-    procedure: holm                # beforehand methods lists the procedures and tests
+    question:
+    procedure: holm                # `beforehand methods` lists the procedures and tests
     hypotheses:
       - id: first_hypothesis
-        claim: CLAIM
+        claim:
         test: welch_t
         outcome: {outcome}
         groups: {{column: {group}, first: {first}, second: {second}}}   # everything is about first - second

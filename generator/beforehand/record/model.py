@@ -149,7 +149,9 @@ class ExclusionRecord:
     rows: int
     by_group: dict[str, int]
     undecided: int
-    """Rows kept because the condition had a missing value."""
+    """Rows kept because the condition has no value for them."""
+    undecided_lines: tuple[int, ...] = ()
+    """The lines of the file on which they stand."""
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -170,6 +172,21 @@ class AnalysisSetRecord:
     principle: str
     rows: int
     by_group: dict[str, int]
+    undecided: int = 0
+    """Rows that do not belong because the condition has no value for them."""
+    undecided_lines: tuple[int, ...] = ()
+    """The lines of the file on which they stand."""
+
+
+@dataclass(frozen=True, kw_only=True)
+class OverlapRecord:
+    """How many rows two analysis sets share."""
+
+    first: str
+    second: str
+    both: int
+    only_first: int
+    only_second: int
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -187,6 +204,7 @@ class RowsRecord:
     analysed_by_group: dict[str, int]
     missing: tuple[MissingRecord, ...]
     analysis_sets: tuple[AnalysisSetRecord, ...]
+    overlaps: tuple[OverlapRecord, ...] = ()
     derived: dict[str, str] = field(default_factory=dict)
     """Derived columns and their expressions, as written."""
 
@@ -282,6 +300,8 @@ class HypothesisRecord:
     remarks: tuple[str, ...]
     no_result_because: str
     """Why there is no result; "" where there is one."""
+    undecided: int = 0
+    """Rows not used because the condition of the hypothesis has no value for them."""
     origin: str = ""
     """Who computed a supplied result, with what."""
     margin_basis: str = ""
@@ -348,6 +368,8 @@ class Record:
     promise: PromiseRecord | None
     """The study-wide promise; None where each family keeps its own."""
     scheme: AcrossFamilies
+    order: tuple[str, ...] = ()
+    """The families that the study's promise covers, in the order in which they were tested."""
     inputs: tuple[InputRecord, ...]
     rows: tuple[RowsRecord, ...]
     families: tuple[FamilyRecord, ...]

@@ -21,7 +21,7 @@ AGREE = 1e-9  # two numbers agree when they differ by no more than this, relativ
 FLOOR = 1e-300  # below this size a p-value has no digits to compare
 FILES = ("record.json", "tests.csv", "manifest-sha256.txt")
 RECOMPUTED = ("p_family", "p_study", "threshold", "decides", "state")
-READ = ("id", "family", "p", "p_entered", "side_agrees", "rank", "factor", "product", "from_rank")
+READ = ("id", "family", "p", "p_entered", "entered_as", "side_agrees", "rank", "factor", "product", "from_rank")
 
 PROCEDURES: dict[str, Callable[..., Any]] = {}
 SCHEMES: dict[str, Callable[..., Any]] = {}
@@ -62,8 +62,9 @@ def say_what_is_done(hypotheses: int, families: list[dict[str, Any]], scheme: st
     print(f"Read: {hypotheses} hypotheses in {len(families)} families.")
     print(f"Recomputed: the columns {', '.join(RECOMPUTED)} and product, and each family's gate and counts;")
     print(f"  from column p_entered alone: {', '.join(whole) or 'nothing'}.")
-    print("Taken as recorded: p, of which p_entered has to be the same, twice, half, or 1 less half; the families,")
-    print("  their members and levels; the sides of the estimates; every other column.")
+    print("Taken as recorded: p, from which p_entered has to follow as the column entered_as says (of a two-sided test")
+    print("  that enters with the side of its claim, that side's p); the families, their members and levels; the sides")
+    print("  of the estimates; every other column.")
     for name in used:
         if name in TAKEN:
             print(f"  For {name}: {TAKEN[name]}.")
@@ -77,7 +78,7 @@ def part(mapping: Any, key: str, kind: Any) -> Any:
 
 
 def read_families(record: Any) -> list[dict[str, Any]]:
-    """Give the families in the order in which they are tested: that of `order`, or as they stand."""
+    """Give the families in the order in which they are tested."""
     part(record, "scheme", str)
     families: list[dict[str, Any]] = part(record, "families", list)
     for family in families:
@@ -91,7 +92,7 @@ def read_families(record: Any) -> list[dict[str, Any]]:
         part(family, "level", (int, float))
         if not all(isinstance(member, str) for member in part(family, "members", list)):
             raise Unreadable(f"record.json: the members of family {family['id']!r} are not ids")
-    order = part(record, "order", list) if "order" in record else []
+    order = part(record, "order", list)
     place = {name: i for i, name in enumerate(order)}
     return sorted(families, key=lambda family: place.get(family["id"], len(place)))
 
@@ -170,15 +171,16 @@ def agree(one: float, other: float) -> bool:
 
 
 def entered(row: dict[str, str]) -> Iterator[str]:
-    """Whether p_entered follows from p: 1 without a result, else p as one side or as two, on one side or the other."""
-    p, p_entered = number(row["p"]), number(row["p_entered"])
-    readings = [p, min(2 * p, 1.0), p / 2, 1 - p / 2] if 0 <= p <= 1 else []
-    if row["p"] == "":
-        readings = [1.0]
+    """Whether p_entered follows from p as the row says: as it is, doubled, or 1 without a result."""
+    p, p_entered, way = number(row["p"]), number(row["p_entered"]), row["entered_as"]
+    p = p if 0 <= p <= 1 else float("nan")
+    follows = {"as it is": p, "doubled": min(2 * p, 1.0), "no result": 1.0, "claim side": p_entered}
     if not 0 <= p_entered <= 1:
         yield f"{row['id']!r}, column p_entered: recorded {row['p_entered']!r}, which is no number from 0 to 1"
-    elif not any(agree(p_entered, reading) for reading in readings):
-        yield f"{row['id']!r}, column p_entered: recorded {row['p_entered']}, which does not follow from p {row['p']!r}"
+    elif way not in follows or (row["p"] == "") != (way == "no result"):
+        yield f"{row['id']!r}, column entered_as: recorded {way!r} beside p {row['p']!r}"
+    elif not agree(p_entered, follows[way]):
+        yield f"{row['id']!r}, column p_entered: recorded {row['p_entered']}, which is not p {row['p']!r} {way}"
     if row["side_agrees"] not in ("yes", "no", ""):
         yield f"{row['id']!r}, column side_agrees: recorded {row['side_agrees']!r}, which is neither yes nor no"
 
