@@ -31,21 +31,41 @@ Matching = Literal["bonferroni"] | None
 """Which simultaneous interval matches the decisions; None where none is in general use."""
 
 
+PER_MEMBER = {
+    "weights": "the weight that the plan gives each hypothesis",
+    "positions": "the place of each hypothesis in the written order, from 0",
+    "statistics": "the t statistic of each contrast",
+    "loadings": "for each contrast with a shared control, sqrt(n / (n + n of the control))",
+    "sizes": "the pair of group sizes behind each contrast",
+}
+PER_FAMILY = {
+    "level": "the level of the promise that covers the family",
+    "df": "the degrees of freedom that all statistics of the family share",
+    "groups": "the planned number of groups",
+    "sides": "on how many sides the statistics are judged: 1 or 2",
+}
+INGREDIENTS = PER_MEMBER | PER_FAMILY
+"""What an entry may ask for beyond p, by these keyword-only parameters; its other keyword-only ones are options."""
+
+
 @dataclass(frozen=True, kw_only=True)
 class Steps:
     """How each adjusted p arises, by rank: everything a pocket calculator needs.
 
-    At level a the p-value of rank i has to meet the threshold a / factor[i].
+    At level a the p-value of rank i has to meet the threshold a / factor[i]. Where an adjusted p is no multiple of p,
+    factor is NaN and ``arithmetic`` says in words where the product comes from.
     """
 
     factor: Vector
     """By how much the p-value of this rank is multiplied."""
     product: Vector
-    """factor x p, before it is made monotone and capped at 1."""
+    """factor x p (or what stands in its place), before it is made monotone and capped at 1."""
     adjusted: Vector
     """The adjusted p-value."""
     taken_from: NDArray[np.intp]
     """The rank, counted from 0, whose product became the adjusted p."""
+    arithmetic: tuple[str, ...] = ()
+    """For each rank what the product is, where it is no multiple of p: "P(Q > 3.41), 4 groups, 76 df"."""
 
 
 def running_maximum(p: Ascending, *, factor: Vector) -> Steps:
@@ -149,26 +169,39 @@ class Procedure:
         return self.adjust.__name__
 
     @property
-    def options(self) -> dict[str, inspect.Parameter]:
-        """The procedure's own options: its keyword-only parameters."""
+    def _keywords(self) -> dict[str, inspect.Parameter]:
         parameters = inspect.signature(self.adjust).parameters.values()
         return {p.name: p for p in parameters if p.kind is p.KEYWORD_ONLY}
+
+    @property
+    def needs(self) -> frozenset[str]:
+        """The ingredients beyond p that it asks for."""
+        return frozenset(self._keywords.keys() & INGREDIENTS.keys())
+
+    @property
+    def options(self) -> dict[str, inspect.Parameter]:
+        """The procedure's own options: its keyword-only parameters that are no ingredients."""
+        return {name: parameter for name, parameter in self._keywords.items() if name not in INGREDIENTS}
 
     def keeps(self, criterion: Criterion) -> bool:
         """Whether the declared control implies a family's promise."""
         return criterion == self.controls or criterion in self.implies
 
-    def steps(self, p: ArrayLike | Ordered, **options: Any) -> Steps:
-        """Give the steps by rank."""
-        return self.adjust(Ordered.of(p).ascending, **options)
+    def steps(self, p: ArrayLike | Ordered, **given: Any) -> Steps:
+        """Give the steps by rank; ``given`` are options and ingredients, those of each member in the order of ``p``."""
+        ordered = Ordered.of(p)
+        by_rank = {name: np.asarray(value)[ordered.order] for name, value in given.items() if name in PER_MEMBER}
+        return self.adjust(ordered.ascending, **(given | by_rank))
 
-    def __call__(self, p: ArrayLike | Ordered, **options: Any) -> Vector:
+    def __call__(self, p: ArrayLike | Ordered, **given: Any) -> Vector:
         """Give the adjusted p-values in the order of ``p``.
 
         Parameters
         ----------
         p : array_like, shape (m,), or Ordered
             Unadjusted p-values of one family, in any order.
+        **given
+            Options of the procedure, and the ingredients that it needs, those of each member in the order of ``p``.
 
         Returns
         -------
@@ -176,15 +209,17 @@ class Procedure:
             Adjusted p-values.
         """
         ordered = Ordered.of(p)
-        adjusted: Vector = ordered.unsorted(self.steps(ordered, **options).adjusted)
+        adjusted: Vector = ordered.unsorted(self.steps(ordered, **given).adjusted)
         return adjusted
 
-    def replay(self, p: list[float], level: float, **options: Any) -> dict[str, list[Any]]:
+    def replay(self, p: list[float], level: float, **given: Any) -> dict[str, list[Any]]:
         """Adjust again on plain lists, another way round: ``{"adjusted": [...], "rejected": [...]}``.
+
+        Everything is in the order of the members. The level is a parameter of every replay, and no ingredient of it.
 
         The text of this function in the entry's file is also what recheck.py is made of.
         """
-        again: dict[str, list[Any]] = PROCEDURES.module(self.name).replay(p, level, **options)
+        again: dict[str, list[Any]] = PROCEDURES.module(self.name).replay(p, level, **given)
         return again
 
 
