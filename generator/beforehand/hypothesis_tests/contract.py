@@ -124,7 +124,7 @@ class StatisticalTest(Generic[P]):
         """Turn samples into arrays of the kind the test takes; what it takes from elsewhere passes as it is."""
         if self.outcome == "supplied":
             return samples
-        arrays = tuple(one_sample(sample, self.outcome) for sample in samples)
+        arrays = tuple(checked(sample, self.outcome) for sample in samples)
         if self.design == "pairs" and len({array.size for array in arrays}) > 1:
             raise ValueError(f"pairs have two values each; found {' and '.join(str(a.size) for a in arrays)} values")
         return arrays
@@ -162,7 +162,7 @@ class StatisticalTest(Generic[P]):
         return float(module.smallest_p(sizes, pooled, alternative=alternative, **options))
 
 
-def one_sample(sample: Any, outcome: OutcomeKind) -> NDArray[Any]:
+def checked(sample: Any, outcome: OutcomeKind) -> NDArray[Any]:
     """Turn one sample into an array: doubles for a number, booleans for an event."""
     values = np.asarray(sample, dtype=np.float64)
     if values.ndim != 1:

@@ -9,11 +9,8 @@ Method = Literal["by_size", "exact", "normal"]
 
 
 @dataclass(frozen=True)
-class Bound:
-    """Up to which size the exact distribution is used.
-
-    The rule looks at sizes only, known before the data, and never at whether values are tied.
-    """
+class SizeRule:
+    """Up to which size the exact distribution is used: a rule about sizes only, never about whether values are tied."""
 
     noun: str
     by_size: int

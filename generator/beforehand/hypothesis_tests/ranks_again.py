@@ -1,4 +1,4 @@
-"""The second route of the rank tests: ranks from sorted lists of exact fractions.
+"""The second route of the rank tests: ranks from sorted lists of whole numbers.
 
 Not shared with ``rank_two_groups``, ``rank_signs`` and ``location``: how ranks are found, the search for the ends of
 the interval, and the upper end (the lower end of the mirrored question); ``rank_sums_again`` says what else is not.
@@ -8,6 +8,7 @@ Shared: what counts as tied.
 import math
 from bisect import bisect_left, bisect_right
 from collections.abc import Callable, Sequence
+from dataclasses import dataclass
 from fractions import Fraction
 from functools import cache
 from itertools import chain
@@ -21,34 +22,45 @@ from beforehand.hypothesis_tests.rank_sums_again import Sums, drawn, flipped, si
 from beforehand.hypothesis_tests.sides import Asked
 from beforehand.hypothesis_tests.ties import rounding, settled
 
-Number = float | Fraction
 
-
-def midranks(values: Sequence[Number]) -> list[int]:
+def midranks(values: Sequence[float]) -> list[int]:
     """Give doubled midranks: values below, plus values not above, plus 1."""
     ascending = sorted(values)
     return [bisect_left(ascending, value) + bisect_right(ascending, value) + 1 for value in values]
 
 
-def lower_end(critical: Sequence[float], above: Callable[[Fraction], float], asked: Asked) -> float:
-    """Give the lower end of the null values that are kept, by halving the list of critical values."""
-    rejected, kept = -1, len(critical)
-    while kept - rejected > 1:
-        middle = (rejected + kept) // 2
-        if asked.keeps(above(between(critical, middle))):
-            kept = middle
-        else:
-            rejected = middle
-    return critical[kept - 1] if kept else -math.inf
+def whole(*samples: Sequence[float]) -> list[list[int]]:
+    """Write doubles as whole numbers of one unit, so small that the middle of any two is whole too."""
+    ratios = [[value.as_integer_ratio() for value in sample] for sample in samples]
+    unit = 2 * max(below for sample in ratios for _, below in sample)
+    return [[above * (unit // below) for above, below in sample] for sample in ratios]
 
 
-def between(critical: Sequence[float], gap: int) -> Fraction:
-    """Give an exact value below all critical values, between two of them, or above all."""
-    if gap == 0:
-        return Fraction(critical[0]) - 1
-    if gap == len(critical):
-        return Fraction(critical[-1]) + 1
-    return (Fraction(critical[gap - 1]) + Fraction(critical[gap])) / 2
+@dataclass(frozen=True)
+class Marks:
+    """The critical null values, ascending, as doubles and as whole numbers; ``far`` is beyond all of them."""
+
+    values: Sequence[float]
+    whole: Sequence[int]
+    far: int
+
+    def interval(self, above: Callable[[int], float], below: Callable[[int], float], asked: Asked) -> Interval:
+        """Give the null values that are kept: ``above`` takes a null value, ``below`` the negative of one."""
+        lower = self._first_kept(self.whole, above, asked)
+        upper = self._first_kept([-mark for mark in reversed(self.whole)], below, asked)
+        return Interval(self.values[lower - 1] if lower else -math.inf, self.values[-upper] if upper else math.inf)
+
+    def _first_kept(self, marks: Sequence[int], above: Callable[[int], float], asked: Asked) -> int:
+        """Count the marks below the first gap whose null values are kept, by halving the list of marks."""
+        rejected, kept = -1, len(marks)
+        while kept - rejected > 1:
+            middle = (rejected + kept) // 2
+            inside = (marks[middle - 1] + marks[middle]) // 2 if middle else -self.far
+            if asked.keeps(above(inside)):
+                kept = middle
+            else:
+                rejected = middle
+        return kept
 
 
 def two_groups_exact(first: Values, second: Values, asked: Asked) -> Located:
@@ -58,19 +70,23 @@ def two_groups_exact(first: Values, second: Values, asked: Asked) -> Located:
     *differences, null_value = settled(*np.array(grid).T).tolist()
     counted = cache(subsets)
 
-    def above(upper: Sequence[Number], lower: Sequence[Number]) -> float:
+    def above(upper: Sequence[float], lower: Sequence[float]) -> float:
         ranks, n = midranks([*upper, *lower]), len(upper)
         if n <= len(lower):
             return counted(tuple(sorted(ranks)), n).above(sum(ranks[:n]))
         return counted(tuple(sorted(ranks)), len(lower)).below(sum(ranks[n:]))
 
     critical = sorted(set(differences))
-    lower = lower_end(critical, lambda shift: above(moved(x, shift), y), asked)
-    upper = -lower_end(negated(critical), lambda shift: above(moved(y, shift), x), asked)
+    one, two, marks = whole(x, y, critical)
+    interval = Marks(critical, marks, far=2 * max(map(abs, one + two)) + 1).interval(
+        lambda shift: above([value - shift for value in one], two),
+        lambda shift: above([value - shift for value in two], one),
+        asked,
+    )
     left, right = at_null(first, second, asked.null_value)
     return Located(
         estimate=median(differences),
-        interval=Interval(lower, upper),
+        interval=interval,
         statistic=sum((a > b) + (a == b) / 2 for a in left for b in right),
         tails=Tails(above(left, right), above(right, left)),
         null_value=null_value,
@@ -103,20 +119,22 @@ def signed_exact(first: Values, second: Values, asked: Asked, *, zeros: str) -> 
     *averages, null_value = settled(*np.array([*grid, (asked.null_value, rounding(asked.null_value))]).T).tolist()
     counted = cache(signs)
 
-    def above(values: Sequence[Number]) -> float:
+    def above(values: Sequence[float]) -> float:
         ranks = signed_ranks(values, zeros)
         return counted(tuple(sorted(map(abs, ranks)))).above(sum(rank for rank in ranks if rank > 0))
 
     critical = sorted(set(averages))
     away = distances(d, e, asked.null_value)
+    values, marks = whole(d, critical)
     return Located(
         estimate=median(averages),
-        interval=Interval(
-            lower_end(critical, lambda value: above(moved(d, value)), asked),
-            -lower_end(negated(critical), lambda value: above(moved(negated(d), value)), asked),
+        interval=Marks(critical, marks, far=2 * max(map(abs, values)) + 1).interval(
+            lambda null_value: above([value - null_value for value in values]),
+            lambda negative: above([-value - negative for value in values]),
+            asked,
         ),
         statistic=sum(rank for rank in signed_ranks(away, zeros) if rank > 0) / 2,
-        tails=Tails(above(away), above(negated(away))),
+        tails=Tails(above(away), above([-value for value in away])),
         null_value=null_value,
     )
 
@@ -136,16 +154,6 @@ def signed_normal(first: Values, second: Values, asked: Asked, *, zeros: str, co
         tails=Tails(null.above(observed), null.below(observed)),
         null_value=asked.null_value,
     )
-
-
-def moved(values: Sequence[float], shift: Fraction) -> list[Fraction]:
-    """Take a shift off each value, exactly."""
-    return [Fraction(value) - shift for value in values]
-
-
-def negated(values: Sequence[float]) -> list[float]:
-    """Mirror values at 0; ascending ones stay ascending when they are sorted again."""
-    return sorted(-value for value in values)
 
 
 def at_null(first: Values, second: Values, null_value: float) -> tuple[list[float], list[float]]:
@@ -170,8 +178,8 @@ def distances(differences: list[float], error: list[float], null_value: float) -
     return [math.copysign(distance, value) for distance, value in zip(far, away, strict=True)]
 
 
-def signed_ranks(away: Sequence[Number], zeros: str) -> list[int]:
+def signed_ranks(away: Sequence[float], zeros: str) -> list[int]:
     """Give each difference that is not zero its doubled rank with its sign."""
-    ranked: list[Number] = [value for value in away if value != 0 or zeros == "pratt"]
-    ranks = midranks([max(value, -value) for value in ranked])
+    ranked = [value for value in away if value != 0 or zeros == "pratt"]
+    ranks = midranks([abs(value) for value in ranked])
     return [rank if value > 0 else -rank for value, rank in zip(ranked, ranks, strict=True) if value != 0]

@@ -30,7 +30,7 @@ class Asked:
     def __post_init__(self) -> None:
         if self.alternative not in ("above", "below", "two_sided"):
             raise ValueError(f"an alternative is above, below or two_sided; found {self.alternative!r}")
-        if not 0 < self.confidence < 1:
+        if not 0 < self.confidence < 1 or self.tail == 0:
             raise ValueError(f"a confidence lies between 0 and 1; found {self.confidence!r}")
         if not math.isfinite(self.null_value):
             raise ValueError(f"a null value is a finite number; found {self.null_value!r}")

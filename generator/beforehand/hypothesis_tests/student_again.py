@@ -1,6 +1,7 @@
 """The second route of the t-tests: exact sums, 50-digit roots, and Student's t by quadrature of its density.
 
-Nothing here is shared with ``student``: no centring, no special function of scipy, no quantile function.
+Nothing here is shared with ``student``: no centring, no special function of scipy, no quantile function. The level of
+each side is read by ``sides``.
 """
 
 import math

@@ -1,7 +1,7 @@
 """The second route of Fisher's exact test: 2 x 2 tables in 40-digit decimal arithmetic.
 
 Nothing here is shared with ``two_by_two``: weights are products from the end of the distribution, polynomials in the
-odds ratio, with no logarithm, no difference of large logarithms and no root finder of scipy.
+odds ratio; no weight has its logarithm taken, and no root finder of scipy is used.
 """
 
 import math

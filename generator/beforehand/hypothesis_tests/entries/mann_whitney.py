@@ -6,14 +6,15 @@ import numpy as np
 
 from beforehand.hypothesis_tests import rank_two_groups, ranks_again
 from beforehand.hypothesis_tests.contract import NotComputed, Result, Values, statistical_test
-from beforehand.hypothesis_tests.rank_methods import Bound, Method
+from beforehand.hypothesis_tests.rank_methods import Method, SizeRule
 from beforehand.hypothesis_tests.refusals import count, first_reason, too_few, varies
 from beforehand.hypothesis_tests.sides import Asked
 from beforehand.hypothesis_tests.ties import Ranks, doubled_midranks, rounding, settled
+from beforehand.spelling import integer
 from beforehand.terms import Alternative
 
 # Counting 50 + 50 values takes 0.03 s, 100 + 100 values 1 s, and an interval with ties counts up to 25 times.
-BOUND = Bound("pairs of values (first group × second group)", by_size=2_500, at_most=10_000)
+RULE = SizeRule("pairs of values (first group × second group)", by_size=2_500, at_most=10_000)
 
 
 @statistical_test(
@@ -21,13 +22,10 @@ BOUND = Bound("pairs of values (first group × second group)", by_size=2_500, at
     design="two_groups",
     outcome="number",
     scale="difference",
-    estimates="shift of the first group against the second",
+    estimates="shift in location",
     parameter="Δ",
     statistic="U",
-    p_is=(
-        "exact, ties included, up to 2,500 pairs of values (first group × second group); by the normal approximation "
-        "beyond"
-    ),
+    p_is=f"exact, ties included, up to {integer(RULE.by_size)} {RULE.noun}; by the normal approximation beyond",
     null="the two groups have the same distribution once the first is shifted by the null value",
     assumptions=(
         "the units are independent of each other",
@@ -101,11 +99,11 @@ def mann_whitney(
     if refusal := _refusal(first, second, asked, method):
         return refusal
     pairs = first.size * second.size
-    if BOUND.exact(pairs, method):
+    if RULE.exact(pairs, method):
         found = rank_two_groups.exact(first, second, asked)
     else:
         found = rank_two_groups.normal(first, second, asked, continuity=continuity)
-    return found.outcome(asked, n=(first.size, second.size), rule=BOUND.remark(pairs, method, continuity=continuity))
+    return found.outcome(asked, n=(first.size, second.size), rule=RULE.remark(pairs, method, continuity=continuity))
 
 
 def second_route(
@@ -123,11 +121,11 @@ def second_route(
     if refusal := _refusal(first, second, asked, method):
         return refusal
     pairs = first.size * second.size
-    if BOUND.exact(pairs, method):
+    if RULE.exact(pairs, method):
         found = ranks_again.two_groups_exact(first, second, asked)
     else:
         found = ranks_again.two_groups_normal(first, second, asked, continuity=continuity)
-    return found.outcome(asked, n=(first.size, second.size), rule=BOUND.remark(pairs, method, continuity=continuity))
+    return found.outcome(asked, n=(first.size, second.size), rule=RULE.remark(pairs, method, continuity=continuity))
 
 
 def smallest_p(
@@ -138,14 +136,17 @@ def smallest_p(
     method: Method = "by_size",
     continuity: bool = True,
 ) -> float:
-    """Give the smallest attainable p at the null value 0: the first group takes the largest, or smallest, values."""
+    """Give the smallest attainable p at the null value 0: the first group takes the largest, or smallest, values.
+
+    Without data no values are tied; under the normal approximation ties can make p smaller than that.
+    """
     n1, n2 = sizes
     if not (n1 and n2):
         return 1.0
     ranks = np.sort(
         doubled_midranks(np.arange(n1 + n2, dtype=np.float64) if pooled is None else settled(pooled, rounding(pooled)))
     )
-    if BOUND.exact(n1 * n2, method):
+    if RULE.exact(n1 * n2, method):
         above, below = _share_as_extreme(ranks[::-1], n1), _share_as_extreme(ranks, n1)
     elif (ranks == ranks[0]).all():
         return 1.0
@@ -171,7 +172,7 @@ def _refusal(first: Values, second: Values, asked: Asked, method: Method) -> Not
     return first_reason(
         too_few(first.size, 1, noun="value", whose=" of the first group"),
         too_few(second.size, 1, noun="value", whose=" of the second group"),
-        BOUND.refuses(first.size * second.size, method),
+        RULE.refuses(first.size * second.size, method),
         None if varies(pooled) else f"all {together} of both groups are equal",
         None if varies(moved, error) else f"all {together} are equal once the null value is taken off the first group",
         n=(first.size, second.size),

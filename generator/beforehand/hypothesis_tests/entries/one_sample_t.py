@@ -63,11 +63,12 @@ def one_sample_t(
     ----------
     Student (1908), The probable error of a mean, Biometrika 6:1-25.
     """
+    asked = Asked(null_value=null_value, alternative=alternative, confidence=confidence)
     if refusal := _refusal(values):
         return refusal
     sample = moments(values)
     return t_outcome(
-        Asked(null_value=null_value, alternative=alternative, confidence=confidence),
+        asked,
         estimate=sample.mean,
         standard_error=sample.standard_error,
         df=sample.n - 1,
@@ -79,11 +80,12 @@ def second_route(
     values: Values, *, null_value: float = 0.0, alternative: Alternative = "two_sided", confidence: float = 0.95
 ) -> Result:
     """Compute the same by exact sums and quadrature; only refusals are shared with the first route."""
+    asked = Asked(null_value=null_value, alternative=alternative, confidence=confidence)
     if refusal := _refusal(values):
         return refusal
     sample = exact_moments(values)
     return t_outcome_again(
-        Asked(null_value=null_value, alternative=alternative, confidence=confidence),
+        asked,
         estimate=sample.mean,
         squared_error=sample.variance_of_mean,
         df=Fraction(sample.n - 1),

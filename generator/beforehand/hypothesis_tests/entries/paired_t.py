@@ -68,11 +68,12 @@ def paired_t(
     ----------
     Student (1908), The probable error of a mean, Biometrika 6:1-25.
     """
+    asked = Asked(null_value=null_value, alternative=alternative, confidence=confidence)
     if refusal := _refusal(first, second):
         return refusal
     differences = moments_of_differences(first, second)
     return t_outcome(
-        Asked(null_value=null_value, alternative=alternative, confidence=confidence),
+        asked,
         estimate=differences.mean,
         standard_error=differences.standard_error,
         df=differences.n - 1,
@@ -89,11 +90,12 @@ def second_route(
     confidence: float = 0.95,
 ) -> Result:
     """Compute the same by exact sums and quadrature; only refusals are shared with the first route."""
+    asked = Asked(null_value=null_value, alternative=alternative, confidence=confidence)
     if refusal := _refusal(first, second):
         return refusal
     differences = exact_moments_of_differences(first, second)
     return t_outcome_again(
-        Asked(null_value=null_value, alternative=alternative, confidence=confidence),
+        asked,
         estimate=differences.mean,
         squared_error=differences.variance_of_mean,
         df=Fraction(differences.n - 1),

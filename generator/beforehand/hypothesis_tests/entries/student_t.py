@@ -73,13 +73,14 @@ def student_t(
     Student (1908), The probable error of a mean, Biometrika 6:1-25.
     Fisher (1925), Applications of "Student's" distribution, Metron 5:90-104.
     """
+    asked = Asked(null_value=null_value, alternative=alternative, confidence=confidence)
     if refusal := _refusal(first, second):
         return refusal
     one, two = moments(first), moments(second)
     df = one.n + two.n - 2
     pooled = math.hypot(math.sqrt(one.n - 1) * one.sd, math.sqrt(two.n - 1) * two.sd) / math.sqrt(df)
     return t_outcome(
-        Asked(null_value=null_value, alternative=alternative, confidence=confidence),
+        asked,
         estimate=one.mean - two.mean,
         standard_error=pooled * math.sqrt(1 / one.n + 1 / two.n),
         df=df,
@@ -97,12 +98,13 @@ def second_route(
     confidence: float = 0.95,
 ) -> Result:
     """Compute the same by exact sums and quadrature; only refusals and remarks are shared with the first route."""
+    asked = Asked(null_value=null_value, alternative=alternative, confidence=confidence)
     if refusal := _refusal(first, second):
         return refusal
     one, two = exact_moments(first), exact_moments(second)
     df = one.n + two.n - 2
     return t_outcome_again(
-        Asked(null_value=null_value, alternative=alternative, confidence=confidence),
+        asked,
         estimate=one.mean - two.mean,
         squared_error=(one.squares + two.squares) / df * Fraction(one.n + two.n, one.n * two.n),
         df=Fraction(df),

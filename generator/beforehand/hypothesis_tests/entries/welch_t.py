@@ -73,13 +73,14 @@ def welch_t(
     Satterthwaite (1946), An approximate distribution of estimates of variance components, Biometrics Bulletin
     2:110-114 (degrees of freedom).
     """
+    asked = Asked(null_value=null_value, alternative=alternative, confidence=confidence)
     if refusal := _refusal(first, second):
         return refusal
     one, two = moments(first), moments(second)
     error = math.hypot(one.standard_error, two.standard_error)
     share = (one.standard_error / error) ** 2, (two.standard_error / error) ** 2
     return t_outcome(
-        Asked(null_value=null_value, alternative=alternative, confidence=confidence),
+        asked,
         estimate=one.mean - two.mean,
         standard_error=error,
         df=1 / (share[0] ** 2 / (one.n - 1) + share[1] ** 2 / (two.n - 1)),
@@ -96,12 +97,13 @@ def second_route(
     confidence: float = 0.95,
 ) -> Result:
     """Compute the same by exact sums and quadrature; only refusals are shared with the first route."""
+    asked = Asked(null_value=null_value, alternative=alternative, confidence=confidence)
     if refusal := _refusal(first, second):
         return refusal
     one, two = exact_moments(first), exact_moments(second)
     v1, v2 = one.variance_of_mean, two.variance_of_mean
     return t_outcome_again(
-        Asked(null_value=null_value, alternative=alternative, confidence=confidence),
+        asked,
         estimate=one.mean - two.mean,
         squared_error=v1 + v2,
         df=(v1 + v2) ** 2 / (v1**2 / (one.n - 1) + v2**2 / (two.n - 1)),

@@ -4,14 +4,14 @@ import numpy as np
 
 from beforehand.hypothesis_tests import rank_signs, ranks_again
 from beforehand.hypothesis_tests.contract import NotComputed, Result, Values, statistical_test
-from beforehand.hypothesis_tests.rank_methods import Bound, Method
+from beforehand.hypothesis_tests.rank_methods import Method, SizeRule
 from beforehand.hypothesis_tests.rank_signs import Differences, Zeros
 from beforehand.hypothesis_tests.refusals import count, first_reason, too_few
 from beforehand.hypothesis_tests.sides import Asked
 from beforehand.hypothesis_tests.ties import rounding
 from beforehand.terms import Alternative
 
-BOUND = Bound("pairs", by_size=100, at_most=200)
+RULE = SizeRule("pairs", by_size=100, at_most=200)
 
 
 @statistical_test(
@@ -19,17 +19,17 @@ BOUND = Bound("pairs", by_size=100, at_most=200)
     design="pairs",
     outcome="number",
     scale="difference",
-    estimates="median difference within pairs",
+    estimates="median difference",
     parameter="θ",
     statistic="W⁺",
-    p_is="exact, ties and zeros included, up to 100 pairs; by the normal approximation beyond",
+    p_is=f"exact, ties and zeros included, up to {RULE.by_size} pairs; by the normal approximation beyond",
     null="the differences within pairs (first - second) are symmetric about the null value",
     assumptions=(
         "the pairs are independent of each other",
         "the differences have a symmetric distribution",
     ),
     second_route=(
-        "ranks by counting in sorted lists of exact fractions; exact distribution in whole numbers as one long "
+        "ranks by counting in sorted lists of whole numbers; exact distribution in whole numbers as one long "
         "integer, or the variance of ranks with random signs; upper end from the signs reversed; k-th averages by "
         "halving the range of values. Shares what counts as tied, what is refused, and the remarks"
     ),
@@ -102,11 +102,11 @@ def wilcoxon_signed_rank(
     pairs, n = Differences.of(first, second), first.size
     if refusal := _refusal(pairs, asked, method, zeros):
         return refusal
-    if BOUND.exact(n, method):
+    if RULE.exact(n, method):
         found = rank_signs.exact(pairs, asked, zeros=zeros)
     else:
         found = rank_signs.normal(pairs, asked, zeros=zeros, continuity=continuity)
-    return found.outcome(asked, n=(n,), rule=BOUND.remark(n, method, continuity=continuity))
+    return found.outcome(asked, n=(n,), rule=RULE.remark(n, method, continuity=continuity))
 
 
 def second_route(
@@ -125,11 +125,11 @@ def second_route(
     n = first.size
     if refusal := _refusal(Differences.of(first, second), asked, method, zeros):
         return refusal
-    if BOUND.exact(n, method):
+    if RULE.exact(n, method):
         found = ranks_again.signed_exact(first, second, asked, zeros=zeros)
     else:
         found = ranks_again.signed_normal(first, second, asked, zeros=zeros, continuity=continuity)
-    return found.outcome(asked, n=(n,), rule=BOUND.remark(n, method, continuity=continuity))
+    return found.outcome(asked, n=(n,), rule=RULE.remark(n, method, continuity=continuity))
 
 
 def smallest_p(
@@ -144,7 +144,7 @@ def smallest_p(
     """Give the smallest attainable p: all differences that are not zero have the same sign.
 
     ``pooled`` are the absolute differences from the null value, or None when no data were read: then none is zero or
-    tied.
+    tied; under the normal approximation ties and zeros can make p smaller than that.
     """
     n = sizes[0]
     if n == 0:
@@ -154,7 +154,7 @@ def smallest_p(
     if not signed.ranks.size:
         return 1.0
     one_sided = 0.5**signed.ranks.size
-    if not BOUND.exact(n, method):
+    if not RULE.exact(n, method):
         null = rank_signs.at_null(signed, n, zeros, continuity=continuity)
         one_sided = null.above(int(signed.ranks.sum()) / 2)
     return min(1.0, 2 * one_sided) if alternative == "two_sided" else one_sided
@@ -168,7 +168,7 @@ def _refusal(pairs: Differences, asked: Asked, method: Method, zeros: Zeros) -> 
     nothing = f"all {count(n, 'difference')} within pairs equal the null value"
     return first_reason(
         too_few(n, 1, noun="pair"),
-        BOUND.refuses(n, method),
+        RULE.refuses(n, method),
         nothing if signed is None or not signed.ranks.size else None,
         n=(n,),
     )
