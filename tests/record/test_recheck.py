@@ -45,7 +45,7 @@ frost_as_treated,closures,fisher_exact,70,0.8,0.4,1.2,,,0.03,,,,described,,,,,0,
 
 def family(name: str, procedure: str, members: list[str], states: dict[str, int], **other: Any) -> dict[str, Any]:
     return {
-        "id": name, "procedure": procedure, "procedure_options": {}, "level": 0.05, "members": members,
+        "id": name, "procedure": procedure, "given": {}, "multiples": True, "level": 0.05, "members": members,
         "tested": True, "closed_by": "", "under_study_promise": True, "states": states, "computed": len(members),
     } | other  # fmt: skip
 

@@ -50,7 +50,7 @@ def analyse(spec: Spec, dataset: Dataset, *, progress: Callable[[str], None] = l
             words
             for one in judged
             for words in hypothesis_records(
-                spec, one.entered.family, tuple(computed[member.id] for member in one.entered.family.members)
+                spec, one, tuple(computed[member.id] for member in one.entered.family.members)
             )
         )
         progress("looking for warnings")

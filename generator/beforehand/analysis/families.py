@@ -40,6 +40,23 @@ class EnteredFamily:
         """The level of the promise that covers the family."""
         return float(self.family.promise.level)
 
+    @property
+    def given(self) -> dict[str, Any]:
+        """What the procedure asks for beyond p, by name: ingredients in the order of the members, and its options."""
+        m = len(self.family.members)
+        ingredients: dict[str, Any] = {
+            "weights": [1 / m if one.weight is None else float(one.weight) for one in self.family.members],
+            "positions": list(range(m)),
+            "level": self.level,
+        }
+        needed = {name: value for name, value in ingredients.items() if name in self.procedure.needs}
+        return needed | dict(self.family.procedure_options)
+
+    @property
+    def replayed_with(self) -> dict[str, Any]:
+        """The same for a replay, to which the level comes by itself."""
+        return {name: value for name, value in self.given.items() if name != "level"}
+
 
 @dataclass(frozen=True, kw_only=True)
 class JudgedFamily:
@@ -52,6 +69,10 @@ class JudgedFamily:
     product: Vector
     from_rank: NDArray[np.int64]
     survives_up_to: NDArray[np.int64]
+    thresholds: Vector
+    """For each member the p-value that its rank has to meet."""
+    arithmetic: tuple[str, ...]
+    """For each member where its product comes from, where it is no multiple of p."""
 
 
 def scheme_of(spec: Spec) -> AcrossFamilies:
@@ -82,7 +103,7 @@ def order_of(spec: Spec) -> list[str]:
 def _result(entered: EnteredFamily) -> FamilyResult:
     return FamilyResult(
         id=entered.family.id,
-        p_family=entered.procedure(entered.p, **entered.family.procedure_options),
+        p_family=entered.procedure(entered.p, **entered.given),
         has_result=entered.has_result,
         against_claim=entered.against_claim,
         level=entered.level,
@@ -91,7 +112,7 @@ def _result(entered: EnteredFamily) -> FamilyResult:
 
 def _judged(entered: EnteredFamily, decision: FamilyDecision) -> JudgedFamily:
     ordered = Ordered.of(entered.p)
-    steps: Steps = entered.procedure.steps(ordered, **entered.family.procedure_options)
+    steps: Steps = entered.procedure.steps(ordered, **entered.given)
     return JudgedFamily(
         entered=entered,
         decision=decision,
@@ -99,6 +120,8 @@ def _judged(entered: EnteredFamily, decision: FamilyDecision) -> JudgedFamily:
         factor=ordered.unsorted(steps.factor),
         product=ordered.unsorted(steps.product),
         from_rank=ordered.unsorted(steps.taken_from + 1),
+        thresholds=ordered.unsorted(entered.level / steps.factor),
+        arithmetic=tuple(ordered.unsorted(np.array(steps.arithmetic or [""] * entered.p.size, dtype=object))),
         survives_up_to=np.where(
             [state in REJECTED for state in decision.states],
             largest_families(entered.procedure, ordered, level=entered.level),
@@ -115,7 +138,7 @@ def _judge_again(
     agreement: Agreement,
 ) -> None:
     """Adjust and decide again from the second computation's p, and compare everything."""
-    replays = [e.procedure.replay(list(e.second_p), e.level, **e.family.procedure_options) for e in entered]
+    replays = [e.procedure.replay(list(e.second_p), e.level, **e.replayed_with) for e in entered]
     may_open = [[bool(x) for x in results[e.family.id].may_open] for e in entered]
     again = SCHEMES[scheme].replay(
         [e.family.id for e in entered],

@@ -135,6 +135,8 @@ def family_record(judged: JudgedFamily) -> FamilyRecord:
         procedure=procedure.name,
         procedure_title=procedure.title,
         procedure_options=dict(family.procedure_options),
+        given=judged.entered.replayed_with,
+        multiples=bool(np.isfinite(judged.factor).all()),
         level=judged.entered.level,
         strong=procedure.strong,
         valid_under=procedure.valid_under,
@@ -149,14 +151,20 @@ def family_record(judged: JudgedFamily) -> FamilyRecord:
 
 
 def hypothesis_records(
-    spec: Spec, family: PlannedFamily, computed: tuple[Computed, ...]
+    spec: Spec, judged: JudgedFamily, computed: tuple[Computed, ...]
 ) -> tuple[HypothesisRecord, ...]:
     """Put the members of a family into words."""
+    family = judged.entered.family
     names = labels(family.members, [one.test for one in computed])
-    return tuple(_hypothesis(spec, family, one, label) for one, label in zip(computed, names, strict=True))
+    return tuple(
+        _hypothesis(spec, family, one, label=label, arithmetic=arithmetic)
+        for one, label, arithmetic in zip(computed, names, judged.arithmetic, strict=True)
+    )
 
 
-def _hypothesis(spec: Spec, family: PlannedFamily, computed: Computed, label: str) -> HypothesisRecord:
+def _hypothesis(
+    spec: Spec, family: PlannedFamily, computed: Computed, *, label: str, arithmetic: str
+) -> HypothesisRecord:
     hypothesis, test, result = computed.hypothesis, computed.test, computed.result
     unit = unit_of(spec, hypothesis, test)
     pair = sides(hypothesis)
@@ -193,6 +201,7 @@ def _hypothesis(spec: Spec, family: PlannedFamily, computed: Computed, label: st
         options=dict(hypothesis.options),
         summaries=_summaries(computed),
         undecided=computed.samples.undecided,
+        arithmetic=arithmetic,
         remarks=result.remarks if isinstance(result, Outcome) else (),
         no_result_because=result.reason if isinstance(result, NotComputed) else "",
         origin=(family.from_data.origin or "") if family.from_data else "",

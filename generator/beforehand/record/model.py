@@ -222,6 +222,10 @@ class FamilyRecord:
     procedure: str
     procedure_title: str
     procedure_options: dict[str, Any]
+    given: dict[str, Any] = field(default_factory=dict)
+    """What the procedure is replayed with beyond p and level: its options, and ingredients in the order of members."""
+    multiples: bool = True
+    """Whether every adjusted p comes from a multiple of a p-value."""
     level: float
     strong: bool
     valid_under: str
@@ -300,6 +304,8 @@ class HypothesisRecord:
     remarks: tuple[str, ...]
     no_result_because: str
     """Why there is no result; "" where there is one."""
+    arithmetic: str = ""
+    """Where the product of the decision trail comes from, in words, where it is no multiple of p."""
     undecided: int = 0
     """Rows not used because the condition of the hypothesis has no value for them."""
     origin: str = ""

@@ -84,9 +84,9 @@ def read_families(record: Any) -> list[dict[str, Any]]:
     for family in families:
         for key in ("id", "procedure", "closed_by"):
             part(family, key, str)
-        for key in ("procedure_options", "states"):
+        for key in ("given", "states"):
             part(family, key, dict)
-        for key in ("tested", "under_study_promise"):
+        for key in ("tested", "under_study_promise", "multiples"):
             part(family, key, bool)
         part(family, "computed", int)
         part(family, "level", (int, float))
@@ -199,7 +199,7 @@ def compare_group(scheme: str, group: list[dict[str, Any]], by_id: dict[str, Any
     for family, rows in zip(group, members):  # noqa: B905 -- read by Python 3.8 too
         p = [number(row["p_entered"]) for row in rows]
         p = [value if 0 <= value <= 1 else 1.0 for value in p]
-        again.append(PROCEDURES[family["procedure"]](p, family["level"], **family["procedure_options"]))
+        again.append(PROCEDURES[family["procedure"]](p, family["level"], **family["given"]))
     decided = SCHEMES[scheme](
         [family["id"] for family in group],
         [result["adjusted"] for result in again],
@@ -230,7 +230,7 @@ def compare_family(family: dict[str, Any], rows: list[Any], again: Any, decided:
             if not same(row[name], value):
                 yield f"{row['id']!r}, column {name}: recorded {row[name]!r}, recomputed {value!r}"
     if not closed_by:
-        yield from trail(rows)
+        yield from trail(rows, family["multiples"])
     expected = {
         "tested": not closed_by,
         "closed_by": closed_by,
@@ -260,11 +260,11 @@ def same(cell: str, value: Any) -> bool:
     return agree(number(cell), value)
 
 
-def trail(rows: list[dict[str, str]]) -> Iterator[str]:
-    """Whether the arithmetic printed for each decision is right: factor x p_entered, and the rank it was taken from."""
+def trail(rows: list[dict[str, str]], multiples: bool) -> Iterator[str]:
+    """Whether the arithmetic of each decision is right: factor x p_entered, and the rank it was taken from."""
     at_rank = {row["rank"]: row for row in rows}
     for row in rows:
-        if not agree(number(row["product"]), number(row["factor"]) * number(row["p_entered"])):
+        if multiples and not agree(number(row["product"]), number(row["factor"]) * number(row["p_entered"])):
             yield f"{row['id']!r}, column product: recorded {row['product']!r}, which is not factor x p_entered"
         source = at_rank.get(row["from_rank"], {"product": ""})
         capped = min(number(source["product"]), 1.0)  # in this order nan stays nan

@@ -29,7 +29,7 @@ KEYS: dict[str, frozenset[str]] = {
     "_Promised": frozenset({"false_rejections", "false_share"}),
     "PerHypothesis": frozenset({
         "switch_to_superiority", "strata", "cluster", "random", "covariates", "exposure", "time", "non_detect",
-        "period", "sequence", "subject", "modifier", "weight", "truth",
+        "period", "sequence", "subject", "modifier", "truth",
     }),
     "HypothesesFrom": frozenset({"planned_at_most", "keep", "levels_of"}),
     "MissingValues": frozenset({"imputations", "using", "shift"}),

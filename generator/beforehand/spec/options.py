@@ -13,27 +13,19 @@ from beforehand.multiplicity.contract import Procedure
 from beforehand.spec.model import Setting
 from beforehand.spec.naming import found
 
-# What a procedure is handed by the analysis; the rest of its signature are options of the spec.
-INGREDIENTS = ("weights", "order", "level", "statistics", "correlation", "groups", "resampled")
-
 Entry = StatisticalTest[Any] | Procedure
-
-
-def options_of(entry: Entry) -> dict[str, inspect.Parameter]:
-    """Give the options that a spec may set."""
-    return {name: option for name, option in entry.options.items() if name not in INGREDIENTS}
 
 
 def with_defaults(written: dict[str, Setting], entry: Entry) -> dict[str, Setting]:
     """Give every option its value: the one written, else the default."""
-    defaults = {name: option.default for name, option in options_of(entry).items()}
+    defaults = {name: option.default for name, option in entry.options.items()}
     known = {name: value for name, value in defaults.items() if isinstance(value, (bool, int, float, str))}
     return {**known, **written}
 
 
 def faults_of(written: dict[str, Setting], entry: Entry, kind: str) -> Iterator[tuple[str | None, str]]:
     """Find the options that don't fit: the option (None for a missing one) and the sentence."""
-    options = options_of(entry)
+    options = entry.options
     for name, value in written.items():
         if name not in options:
             yield name, f"the {kind} '{entry.name}' has no option '{name}'. {_instead(name, options)}"

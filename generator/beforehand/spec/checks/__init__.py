@@ -9,6 +9,7 @@ from beforehand.spec.checks.identifiers import check_answers, check_assumptions,
 from beforehand.spec.checks.promises import check_levels, check_procedure, check_scheme
 from beforehand.spec.checks.repeats import check_repeats
 from beforehand.spec.checks.sides import check_claim, check_direction, check_null, check_options
+from beforehand.spec.checks.weights import check_weights
 from beforehand.spec.model import Document
 from beforehand.spec.places import Finding
 
@@ -38,6 +39,7 @@ def _within(document: Document, number: int) -> Iterator[Finding]:
         yield from check_claim(block)
         yield from check_options(block)
     yield from check_repeats(document, number)
+    yield from check_weights(document, number)
 
 
 def _under_promise(document: Document, number: int) -> Iterator[Finding]:
