@@ -3,6 +3,7 @@
 from typing import Literal
 
 Alternative = Literal["above", "below", "two_sided"]
+NullForm = Literal["at", "at_most", "at_least", "outside", "inside"]
 ClaimDirection = Literal["above", "below", "either"]
 LevelIs = Literal["one_sided", "two_sided"]
 Intent = Literal["confirmatory", "exploratory"]

@@ -1,15 +1,12 @@
 """Null hypotheses of five forms, each judged by one-sided tests of any entry; and how they are written in symbols."""
 
-from collections.abc import Callable, Mapping, Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
-from functools import partial
-from typing import Any, Literal
+from typing import Any
 
 from beforehand.hypothesis_tests.contract import NotComputed, Outcome, Result, StatisticalTest
 from beforehand.spelling import MOST_DIGITS, short
-from beforehand.terms import Alternative
-
-NullForm = Literal["at", "at_most", "at_least", "outside", "inside"]
+from beforehand.terms import Alternative, NullForm
 
 _SIDE: dict[str, Alternative] = {"at_most": "above", "at_least": "below"}
 _MARGINS = {"at": 1, "at_most": 1, "at_least": 1, "outside": 2, "inside": 2}
@@ -97,33 +94,12 @@ def judge_null(
     ----------
     Schuirmann (1987), Journal of Pharmacokinetics and Biopharmaceutics 15:657-680 (two one-sided tests).
     """
-    settings = {"confidence": confidence, **(options or {})}
-    return _judged(entry, partial(entry, *samples, **settings), null, alternative)
-
-
-def judge_null_again(
-    entry: StatisticalTest[...],
-    samples: Sequence[Any],
-    *,
-    null: Null,
-    alternative: Alternative | None = None,
-    confidence: float = 0.95,
-    options: Mapping[str, Any] | None = None,
-) -> Result:
-    """Do the same with the entry's second route; parameters and result are those of ``judge_null``."""
-    settings = {"confidence": confidence, **(options or {})}
-    return _judged(entry, partial(entry.again, *samples, **settings), null, alternative)
-
-
-def _judged(
-    entry: StatisticalTest[...], route: Callable[..., Result], null: Null, alternative: Alternative | None
-) -> Result:
     if entry.design == "supplied" and null.form != "at":
         raise ValueError(f"a supplied p-value can't be judged against margins; found the form {null.form}")
     side = null.side(alternative)
 
     def ask(null_value: float, on: Alternative) -> Result:
-        return route(null_value=null_value, alternative=on)
+        return entry(*samples, null_value=null_value, alternative=on, confidence=confidence, **(options or {}))
 
     if null.form in ("at", "at_most", "at_least"):
         return ask(null.values[0], side)

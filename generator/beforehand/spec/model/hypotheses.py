@@ -17,9 +17,8 @@ from beforehand.spec.model.words import (
     Weight,
     refused,
 )
-from beforehand.terms import Alternative, ClaimDirection, MissingMethod, Purpose, Reason
+from beforehand.terms import Alternative, ClaimDirection, MissingMethod, NullForm, Purpose, Reason
 
-NullForm = Literal["at", "at_most", "at_least", "outside", "inside"]
 Setting = bool | int | float | str
 """What an option of a test or procedure may be; the test itself says which."""
 
