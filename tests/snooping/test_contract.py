@@ -8,9 +8,8 @@ from typing import Any, get_args
 
 import pytest
 
-from beforehand import terms
 from beforehand.snooping.contract import GRAVEST_FIRST, WARNING_RULES, Evidence, Finding, WarningRule, warning_rule
-from beforehand.terms import EvidenceFrom, Scope, Severity
+from beforehand.terms import WARNING_NAMES, EvidenceFrom, Scope, Severity
 
 NOTHING: Any = None
 TEXTS = ("title", "why", "basis", "measured_on")
@@ -29,7 +28,7 @@ def rule(name: str) -> WarningRule:
 def test_one_word(name: str, rule: WarningRule) -> None:
     assert rule.name == name
     assert Path(inspect.getfile(rule.find)).stem == name
-    assert name in terms.WARNING_RULES  # the word that `answers` of a spec may use
+    assert name in WARNING_NAMES  # the word that `answers` of a spec may use
     assert (Path(__file__).parent / "entries" / f"test_{name}.py").is_file()
 
 

@@ -1,9 +1,10 @@
 """Fires where a planned hypothesis has no result, and says what leaving it out would have changed."""
 
 from collections.abc import Callable
+from dataclasses import replace
 
 from beforehand.snooping.contract import Evidence, Finding
-from beforehand.snooping.entries.planned_test_without_result import planned_test_without_result
+from beforehand.snooping.entries.planned_test_without_result import given_to, planned_test_without_result
 
 Make = Callable[..., Evidence]
 
@@ -126,3 +127,11 @@ def test_no_member_has_a_result(evidence: Make) -> None:
     )[0]
     assert finding.number.startswith("m = 2 as planned and 0 as computed;")
     assert finding.number.endswith("No decision would differ had they been left out.")
+
+
+def test_weights_and_order_without_the_missing_ones(evidence: Make) -> None:
+    study = evidence(bearings(APART, [0] * 8, [5, 7, 6, 8] * 2), columns=COLUMNS, families=FAMILIES)
+    given = {"weights": [0.5, 0.25, 0.25], "positions": [2, 0, 1], "df": 6}
+    family = replace(study.families[0], given=given)
+    without = given_to(family, ["main/wear", "main/heat"])
+    assert without == {"weights": [0.5 / 0.75, 0.25 / 0.75], "positions": [1, 0], "df": 6}

@@ -1,9 +1,10 @@
 """Planned hypotheses that have no result."""
 
 from collections.abc import Iterator
+from typing import Any
 
 from beforehand.data.wording import listed
-from beforehand.multiplicity.contract import PROCEDURES
+from beforehand.multiplicity.contract import PER_MEMBER, PROCEDURES
 from beforehand.multiplicity.decision import is_rejected
 from beforehand.record.model import FamilyRecord
 from beforehand.snooping.contract import Evidence, Finding, warning_rule
@@ -97,8 +98,24 @@ def _rejected_without(evidence: Evidence, family: FamilyRecord) -> dict[str, boo
     if not members:
         return {}
     p = evidence.results.p_entered[[evidence.row[member] for member in members]]
-    adjusted = PROCEDURES[family.procedure](p, **family.procedure_options)
+    adjusted = PROCEDURES[family.procedure](p, **given_to(family, members))
     return dict(zip(members, is_rejected(adjusted, family.level).tolist(), strict=True))
+
+
+def given_to(family: FamilyRecord, members: list[str]) -> dict[str, Any]:
+    """Give what the family's procedure asks for beyond p if it had only these members.
+
+    Weights stay in proportion and sum to 1 again; the written order closes up.
+    """
+    kept = [family.members.index(member) for member in members]
+    given = {name: [value[i] for i in kept] if name in PER_MEMBER else value for name, value in family.given.items()}
+    if "weights" in given:
+        given["weights"] = [weight / sum(given["weights"]) for weight in given["weights"]]
+    if "positions" in given:
+        given["positions"] = [sorted(given["positions"]).index(position) for position in given["positions"]]
+    if "level" in PROCEDURES[family.procedure].needs:
+        given["level"] = family.level
+    return given
 
 
 def _gates(evidence: Evidence, family: FamilyRecord) -> str:
