@@ -76,7 +76,7 @@ def test_whole_text(evidence: Make) -> None:
         Finding(
             about="study",
             fact=(
-                "Data set 'bearings' holds 3 columns that look like an outcome and that no hypothesis is about: "
+                "Data set 'bearings' has 3 columns that could hold an outcome and that no hypothesis is about: "
                 "'heat'; not declared in the spec: 'dust' and 'colour'."
             ),
             number=(
@@ -116,7 +116,7 @@ def test_each_use_counts(evidence: Make) -> None:
 def test_a_derived_column_that_is_not_used_uses_nothing(evidence: Make) -> None:
     bare = FAMILIES.replace("outcome: louder", "outcome: start_noise")
     finding = outcomes_without_hypothesis(evidence(bearings(), columns=COLUMNS, more=MORE, families=bare))[0]
-    assert finding.fact.endswith("1 column that looks like an outcome and that no hypothesis is about: 'noise'.")
+    assert finding.fact.endswith("1 column that could hold an outcome and that no hypothesis is about: 'noise'.")
 
 
 def test_without_a_rejection_no_claim_rests_on_it(evidence: Make) -> None:

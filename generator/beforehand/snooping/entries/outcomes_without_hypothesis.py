@@ -65,13 +65,16 @@ def outcomes_without_hypothesis(evidence: Evidence) -> Iterator[Finding]:
 
 
 def _fact(one: Unmentioned) -> str:
-    what = "1 column that looks" if one.count == 1 else f"{one.count} columns that look"
+    columns = "1 column" if one.count == 1 else f"{one.count} columns"
     parts = []
     if one.declared:
         parts.append(listed(_quoted(one.declared), shown=SHOWN))
     if one.undeclared:
         parts.append(f"not declared in the spec: {listed(_quoted(one.undeclared), shown=SHOWN)}")
-    return f"Data set '{one.data}' holds {what} like an outcome and that no hypothesis is about: {'; '.join(parts)}."
+    return (
+        f"Data set '{one.data}' has {columns} that could hold an outcome and that no hypothesis is about: "
+        f"{'; '.join(parts)}."
+    )
 
 
 def _quoted(names: tuple[str, ...]) -> list[str]:
