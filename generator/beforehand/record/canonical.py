@@ -84,6 +84,11 @@ def record_bytes(record: Record) -> bytes:
     return json_bytes(_plain(content))
 
 
+def report_number(record: Record) -> str:
+    """Give the report's number: the study's identifier with the first 8 digits of the results checksum."""
+    return f"{record.study.identifier}.{sha256(record_bytes(record))[:8]}"
+
+
 def _plain(value: Any) -> Any:
     if isinstance(value, dict):
         return {str(key): _plain(item) for key, item in value.items()}

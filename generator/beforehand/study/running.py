@@ -12,7 +12,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 from beforehand.errors import CallFault
-from beforehand.record.canonical import json_bytes, read_record, record_bytes, results_bytes, sha256
+from beforehand.record.canonical import json_bytes, read_record, record_bytes, report_number, results_bytes, sha256
 from beforehand.record.environment import environment
 from beforehand.record.folder import Written, check_target, read_folder, write_run
 from beforehand.record.manifest import INPUTS, checksum_lines
@@ -48,8 +48,8 @@ class Run:
 
     @property
     def identifier(self) -> str:
-        """The report's number: the study's identifier with the first 8 digits of the results checksum."""
-        return f"{self.record.study.identifier}-{sha256(record_bytes(self.record))[:8]}"
+        """The report's number."""
+        return report_number(self.record)
 
     @property
     def tests(self) -> "pd.DataFrame":

@@ -16,7 +16,11 @@ FAMILIES = """
   question: Does clay differ from plain grease?
   procedure: bonferroni
   hypotheses:
-    - {id: wears, test: student_t, outcome: wear, groups: {column: grease, first: clay, second: plain}, alternative: two_sided}
+    - id: wears
+      test: student_t
+      outcome: wear
+      groups: {column: grease, first: clay, second: plain}
+      alternative: two_sided
 """
 TABLE: dict[str, list[object]] = {
     "grease": ["plain", "clay"] * 8,
@@ -38,7 +42,7 @@ def test_counts_by_group(evidence: Make) -> None:
         "2 rows were left out because: the bearing seized. The plan says that this was known only after allocation."
     )
     # by hand: none of 8 plain ones, 2 of 8 clay ones, so 0 % and 25 %
-    assert finding.number == "By group: plain 0 of 8, clay 2 of 8; the shares differ by up to 25\N{THIN SPACE}%."
+    assert finding.number == "By group: plain 0 of 8, clay 2 of 8; the shares differ by up to 25\N{NARROW NO-BREAK SPACE}%."
 
 
 def test_without_groups_it_counts_all(evidence: Make) -> None:

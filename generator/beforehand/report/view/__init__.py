@@ -1,6 +1,6 @@
 """From the record to words: everything the templates print, with every number already written."""
 
-from beforehand.record.canonical import record_bytes, sha256
+from beforehand.record.canonical import record_bytes, report_number, sha256
 from beforehand.record.model import Record
 from beforehand.report.figures.model import Figure
 from beforehand.report.view.analysed import analysed
@@ -25,7 +25,7 @@ def view(record: Record, figures: tuple[Figure, ...]) -> View:
     """Put a record into words."""
     lines = lines_of(record)
     digits = sha256(record_bytes(record))
-    number = f"{record.study.identifier}.{digits[:8]}"
+    number = report_number(record)
     return View(
         title=record.study.title,
         identifier=record.study.identifier,

@@ -16,10 +16,7 @@ from beforehand.spelling import integer, percent
         "Allocation makes groups comparable; what happens afterwards may depend on the group, and leaving rows out by "
         "it can make groups differ that would not."
     ),
-    basis=(
-        "ICH E9, section 5.2.1 (from memory: exclusions after randomisation need a reason that the allocation cannot "
-        "have influenced)"
-    ),
+    basis="ICH E9 (1998), Statistical Principles for Clinical Trials, on the full analysis set",
     false_alarm_rate=0.0,
     measured_on="studies whose exclusions were all known before allocation; it rests on no chance",
 )
