@@ -36,6 +36,11 @@ RARE = (
 
 # Inter's "calt" is left out on purpose: it draws -> as an arrow and so alters what an author wrote.
 FEATURES = ("ccmp", "kern", "locl", "mark", "mkmk", "tnum")
+# What stands in words too: Inter's "tnum" gives these the width of figures, and "two-sided" gaps in every table.
+NO_FIGURES = {
+    "hyphen", "space", "uni00A0", "semicolon", "asterisk", "asciitilde",
+    "parenleft", "parenright", "bracketleft", "bracketright", "braceleft", "braceright",
+}  # fmt: skip
 UNUSED_TABLES = ("FFTM", "MATH", "gasp")
 
 
@@ -47,6 +52,7 @@ def cut(source: Path, target: Path, *repertoire: tuple[int, int]) -> None:
     options.drop_tables += UNUSED_TABLES
     font = TTFont(source, recalcTimestamp=False)
     font.flavor = None
+    keep_words_out_of_tabular_figures(font)
     cutter = subset.Subsetter(options)
     cutter.populate(unicodes=[code for first, last in repertoire for code in range(first, last + 1)])
     cutter.subset(font)
@@ -54,6 +60,17 @@ def cut(source: Path, target: Path, *repertoire: tuple[int, int]) -> None:
     packed = TTFont(target, recalcTimestamp=False)
     packed.flavor = "woff2"
     packed.save(target.with_suffix(".woff2"))
+
+
+def keep_words_out_of_tabular_figures(font: TTFont) -> None:
+    """Let "tnum" change figures, and the signs that stand among them, alone."""
+    substitutions = font["GSUB"].table
+    for entry in substitutions.FeatureList.FeatureRecord:
+        for place in entry.Feature.LookupListIndex if entry.FeatureTag == "tnum" else ():
+            for part in substitutions.LookupList.Lookup[place].SubTable:
+                mapping = getattr(part, "ExtSubTable", part).mapping
+                for glyph in NO_FIGURES & set(mapping):
+                    del mapping[glyph]
 
 
 if __name__ == "__main__":

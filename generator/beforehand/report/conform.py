@@ -25,6 +25,7 @@ ACCESSIBILITY = b"""<rdf:Description xmlns:pdfuaid="http://www.aiim.org/pdfua/ns
 <pdfaProperty:description>Part of ISO 14289 that the file follows</pdfaProperty:description></rdf:li></rdf:Seq>
 </pdfaSchema:property></rdf:li></rdf:Bag></pdfaExtension:schemas></rdf:Description>
 </rdf:RDF>"""
+BINARY = {"Length1", "N", "Width"}  # entries of fonts, colour profiles and images
 SHORT = b"\r\nendstream"
 
 
@@ -33,7 +34,7 @@ def conform(document: Any, pdf: pydyf.PDF) -> None:
     _allow_no_empty_boxes(document)
     _allow_only_links(pdf)
     structure.scope_headings(pdf)
-    structure.pair_terms(pdf)
+    structure.mend_lists(pdf)
     structure.join_links(pdf)
     structure.set_margins_apart(pdf)
     _declare_accessible(pdf)
@@ -68,19 +69,23 @@ def _declare_accessible(pdf: pydyf.PDF) -> None:
 def end_no_stream_in_a_return(pdf: pydyf.PDF) -> None:
     """Keep streams from ending in byte 13, which readers that look for the end of a line do not count as theirs.
 
-    One packed stream in 256 does: it is then left unpacked. The last two are made while writing; an object that
-    nothing refers to gives these another end.
+    One packed stream in 256 does. An empty line more gives text another end; fonts, profiles and images are left
+    unpacked. The last two streams are made while writing: an object that nothing refers to gives them another end.
     """
     for stream in pdf.objects:
         if isinstance(stream, pydyf.Stream) and stream.data.endswith(SHORT):
-            stream.compress = False
+            if stream.extra.keys() & BINARY:
+                stream.compress = False
+            else:
+                stream.stream.append(b"")
     while any(stream.data.endswith(SHORT) for stream in _made_while_writing(pdf)):
         pdf.add_object(pydyf.Dictionary({"Type": "/Spare"}))
 
 
 def _made_while_writing(pdf: pydyf.PDF) -> list[pydyf.Stream]:
-    """Write a copy to see the two streams that hold all other objects, and where they are."""
+    """Write a copy to see the streams of all other objects and of their places; neither depends on the identifier."""
     trial = copy.copy(pdf)
     trial.objects = list(pdf.objects)
-    trial.write(io.BytesIO(), b"1.7", identifier=True, compress=True)
-    return trial.objects[-2:]
+    trial.write(io.BytesIO(), b"1.7", identifier=False, compress=True)
+    made: list[pydyf.Stream] = trial.objects[-2:]
+    return made

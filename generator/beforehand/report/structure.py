@@ -41,7 +41,7 @@ def scope_headings(pdf: pydyf.PDF) -> None:
         target(pdf, pdf.catalog["StructTreeRoot"])["IDTree"] = pydyf.Dictionary({"Names": pydyf.Array(names)})
 
 
-def pair_terms(pdf: pydyf.PDF) -> None:
+def mend_lists(pdf: pydyf.PDF) -> None:
     """Leave nothing but items in lists: each <div> of a <dl> becomes one, what else stands between goes into them."""
     for element in list(dictionaries(pdf, "/StructElem")):
         for kid in kids(pdf, element) if element["S"] == "/L" else ():

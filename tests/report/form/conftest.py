@@ -1,16 +1,15 @@
 """A small record whose texts hold everything that is hard to draw or tempting to obey."""
 
-import math
-
-import numpy as np
 import pytest
 
+from beforehand.record.canonical import results_column
 from beforehand.record.model import (
     AgreementRecord,
     FamilyRecord,
     GroupSummary,
     HypothesisRecord,
     InputRecord,
+    Integers,
     MethodRecord,
     PromiseRecord,
     Record,
@@ -158,28 +157,20 @@ def _warning() -> WarningRecord:
 
 
 def _results() -> Results:
-    floats = {
+    """Fill the columns that matter here; the others are empty."""
+    columns = {
+        "id": IDS, "family": ("speed", "speed"), "test": ("welch_t", "welch_t"),
+        "state": ("rejected", "not_rejected"), "decides": ("p_study", "p_study"), "side_agrees": ("yes", "no"),
+        "entered_as": ("as it is", "as it is"), "n": (20, 20), "n_first": (10, 10), "n_second": (10, 10),
         "estimate": (-9.0, 1.0), "lower": (-12.0, -2.0), "upper": (-6.0, 4.0), "statistic": (-6.0, 0.7),
-        "df": (17.5, 17.5), "p": (0.00001, 0.49), "p_family": (0.00002, 0.49), "p_study": (0.00002, 0.49),
-        "threshold": (0.05, 0.05), "p_entered": (0.00001, 0.49), "factor": (2.0, 1.0), "product": (0.00002, 0.49),
-        "standard_error": (1.5, 1.5), "interval_level": (0.95, 0.95), "matching_lower": (math.nan, math.nan),
-        "matching_upper": (math.nan, math.nan), "matching_level": (math.nan, math.nan),
+        "standard_error": (1.5, 1.5), "interval_level": (0.95, 0.95), "df": (17.5, 17.5), "p": (0.00001, 0.49),
+        "p_entered": (0.00001, 0.49), "p_family": (0.00002, 0.49), "p_study": (0.00002, 0.49),
+        "threshold": (0.05, 0.05), "rank": (1, 2), "factor": (2.0, 1.0), "product": (0.00002, 0.49),
+        "from_rank": (1, 2), "survives_up_to": (2500, 0),
     }  # fmt: skip
-    integers = {"n": 20, "n_first": 10, "n_second": 10}
-    return Results(
-        id=IDS,
-        family=("speed", "speed"),
-        test=("welch_t", "welch_t"),
-        state=("rejected", "not_rejected"),
-        decides=("p_study", "p_study"),
-        side_agrees=("yes", "no"),
-        entered_as=("as it is", "as it is"),
-        rank=np.array([1, 2]),
-        from_rank=np.array([1, 2]),
-        survives_up_to=np.array([2500, 0]),
-        **{name: np.array(values) for name, values in floats.items()},
-        **{name: np.array([value, value]) for name, value in integers.items()},
-    )
+    kinds = Results.__annotations__
+    empty = {name: (0, 0) if kind is Integers else ("", "") for name, kind in kinds.items()}
+    return Results(**{name: results_column(name, columns.get(name, empty[name])) for name in kinds})
 
 
 def _drawn() -> dict:

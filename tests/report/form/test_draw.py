@@ -38,7 +38,7 @@ def test_the_report_conforms(pages, profile):
 
 
 @needs_pango
-def test_the_pdf_can_be_found_one_s_way_in(pages, record):
+def test_readers_of_the_pdf_find_their_way(pages, record):
     reader = PdfReader(io.BytesIO(pages.pdf))
     assert reader.outline
     for number, sheet in enumerate(reader.pages[1:], 2):
@@ -47,7 +47,7 @@ def test_the_pdf_can_be_found_one_s_way_in(pages, record):
 
 
 @needs_pango
-def test_the_caller_s_world_changes_no_byte(record, pages, tmp_path):
+def test_the_world_of_the_caller_changes_no_byte(record, pages, tmp_path):
     """A notebook's rcParams, time zone, locale, folder, hash seed and umask stay outside."""
     (tmp_path / "record.json").write_bytes(record_bytes(record))
     (tmp_path / "tests.csv").write_bytes(results_bytes(record.results))

@@ -41,6 +41,22 @@ def test_no_feature_replaces_what_an_author_wrote(face):
     assert face.family != "Inter" or {"kern", "tnum"} <= features
 
 
+def test_tabular_figures_leave_words_alone(face):
+    with TTFont(face.path) as font:
+        table = font["GSUB"].table
+        places = {
+            place
+            for entry in table.FeatureList.FeatureRecord
+            if entry.FeatureTag == "tnum"
+            for place in entry.Feature.LookupListIndex
+        }
+        changed = {
+            glyph for place in places for part in table.LookupList.Lookup[place].SubTable for glyph in part.mapping
+        }
+    assert not changed & {"hyphen", "space", "parenleft", "a"}
+    assert face.family != "Inter" or {"zero", "nine", "period", "minus"} <= changed
+
+
 def test_the_packed_font_is_the_same_font(face):
     with TTFont(face.path) as plain, TTFont(face.packed) as packed:
         assert plain.getGlyphOrder() == packed.getGlyphOrder()

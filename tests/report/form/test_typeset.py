@@ -197,14 +197,16 @@ def written(pdf):
     return out.getvalue()
 
 
-def test_a_packed_stream_that_ends_in_a_return_is_left_unpacked():
+@pytest.mark.parametrize(("extra", "packed"), [({}, True), ({"Length1": 1}, False)])
+def test_a_packed_stream_does_not_end_in_a_return(extra, packed):
     """The last byte of a zlib stream is that of the Adler-32 sum, here 1 + 12 (RFC 1950)."""
     pdf = small_file("x")
-    stream = pydyf.Stream([b"\x0c"], compress=True)
+    stream = pydyf.Stream([b"\x0c"], extra, compress=True)
     pdf.add_object(stream)
     assert stream.data.endswith(b"\r\nendstream")
     conform.end_no_stream_in_a_return(pdf)
     assert b"\r\nendstream" not in written(pdf)
+    assert stream.compress is packed
 
 
 def test_the_streams_made_while_writing_do_not_end_in_a_return_either():
