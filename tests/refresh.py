@@ -8,12 +8,11 @@ import tempfile
 from pathlib import Path
 from typing import Any
 
-from beforehand.spec.schema import json_schema, key_reference
-
 from beforehand.hypothesis_tests.contract import STATISTICAL_TESTS
 from beforehand.multiplicity.contract import PROCEDURES
 from beforehand.record.manifest import RUN
 from beforehand.snooping.contract import WARNING_RULES
+from beforehand.spec.schema import json_schema, key_reference
 from beforehand.study import report
 from beforehand.terms import CRITERION_WORDS
 

@@ -14,6 +14,9 @@ from beforehand.spec.model import Hypothesis
 from beforehand.spec.planned import PlannedFamily
 from beforehand.terms import Alternative, EnteredAs
 
+EQUAL_SIDES = 1e-6
+"""One-sided p-values that differ by no more than this, relatively, lie on no side: an estimate at its null value."""
+
 
 @dataclass(frozen=True, kw_only=True)
 class Computed:
@@ -110,9 +113,9 @@ def _entered(asked: _Asked, result: Result, reading: Reading) -> tuple[float, En
 
 
 def _side_agrees(asked: _Asked) -> str:
-    """Say whether the smaller of the two one-sided p-values is that of the claim."""
+    """Say whether the smaller of the two one-sided p-values is that of the claim; where they are equal, it is."""
     direction: Any = asked.hypothesis.claim_direction
     if asked.one_sided or asked.null.form != "at" or direction not in ("above", "below"):
         return ""
     other: Alternative = "below" if direction == "above" else "above"
-    return "yes" if asked.one_sided_p(direction) <= asked.one_sided_p(other) else "no"
+    return "yes" if asked.one_sided_p(direction) <= asked.one_sided_p(other) * (1 + EQUAL_SIDES) else "no"

@@ -11,6 +11,7 @@ from typing import Any
 
 import numpy as np
 
+from beforehand.analysis.computed import EQUAL_SIDES
 from beforehand.data.evaluate import evaluated
 from beforehand.data.table import Table
 from beforehand.hypothesis_tests.contract import NotComputed, Outcome, Result, StatisticalTest
@@ -156,12 +157,13 @@ def _entered(ask: Ask, family: PlannedFamily, hypothesis: Hypothesis, p: float, 
 
 
 def _side(ask: Ask, hypothesis: Hypothesis) -> str:
-    """Say whether the data lean to the side of the claim."""
+    """Say whether the data lean to the side of the claim; at its null value an estimate leans to neither."""
     null_value = hypothesis.null_hypothesis.margins[0]
-    leaning = _p(ask, null_value, "above") - _p(ask, null_value, "below")
+    above, below = _p(ask, null_value, "above"), _p(ask, null_value, "below")
+    neither = abs(above - below) <= EQUAL_SIDES * min(above, below)
     match hypothesis.claim_direction:
         case "above":
-            return "yes" if leaning <= 0 else "no"
+            return "yes" if above < below or neither else "no"
         case "below":
-            return "yes" if leaning >= 0 else "no"
+            return "yes" if below < above or neither else "no"
     return ""

@@ -42,7 +42,8 @@ def test_counts_by_group(evidence: Make) -> None:
         "2 rows were left out because: the bearing seized. The plan says that this was known only after allocation."
     )
     # by hand: none of 8 plain ones, 2 of 8 clay ones, so 0 % and 25 %
-    assert finding.number == "By group: plain 0 of 8, clay 2 of 8; the shares differ by up to 25\N{NARROW NO-BREAK SPACE}%."
+    share = "25\N{NARROW NO-BREAK SPACE}%"
+    assert finding.number == f"By group: plain 0 of 8, clay 2 of 8; the shares differ by up to {share}."
 
 
 def test_without_groups_it_counts_all(evidence: Make) -> None:
