@@ -105,9 +105,21 @@ def test_many_estimates_say_how_many_are_drawn() -> None:
 def test_staircases_are_drawn_for_few_and_many(p: list[float], states: list[State]) -> None:
     (figure,) = staircase.draw({"one": stairs(p, states)})
     assert figure.key == "staircase-one"
-    assert len(figure.table) == len(p) + 1
+    assert len(figure.table) == min(len(p), staircase.TABLED + 1) + 1
     assert f"{states.count('rejected')} rejected" in figure.alternative_text
     assert ("left edge" in figure.caption) == (min(p) < 1e-8)
+
+
+def test_twenty_thousand_points_stay_a_small_picture() -> None:
+    m = 20_000
+    (figure,) = staircase.draw({"one": stairs([(at + 1) / m for at in range(m)], ["not_rejected"] * m)})
+    assert len(figure.svg) < 300_000  # characters; with every point by itself it would be several millions
+
+
+def test_a_procedure_without_thresholds_has_no_staircase() -> None:
+    without = stairs([0.01], ["rejected"])
+    without["points"][0]["threshold"] = None
+    assert list(staircase.draw({"one": without})) == []
 
 
 def test_a_family_without_points_has_no_staircase() -> None:

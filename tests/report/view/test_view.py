@@ -10,7 +10,7 @@ from typing import Any
 
 import pytest
 
-from beforehand.record.model import InputRecord, Record
+from beforehand.record.model import InputRecord, OverlapRecord, Record
 from beforehand.report.figures import draw_figures
 from beforehand.report.fonts import register_in_matplotlib
 from beforehand.report.html import page
@@ -217,6 +217,23 @@ def test_undeclared_columns_and_missing_codes_are_listed(make: Make, plan: Any) 
     }
     assert facts["Columns not declared"] == "hail"
     assert facts["Missing codes"] == "(empty), -99"
+
+
+def test_rows_that_conditions_could_not_judge_are_listed(make: Make, plan: Any) -> None:
+    record = make(plan(id="one", p=[0.01]))
+    undecided = replace(record.rows[0].analysis_sets[0], undecided=2, undecided_lines=(7, 9))
+    overlap = OverlapRecord(first="full", second="dry", both=40, only_first=8, only_second=0)
+    rows = replace(record.rows[0], analysis_sets=(undecided,), overlaps=(overlap,))
+    flow, shared = view(replace(record, rows=(rows,)), ()).analysed.data[0].tables[:2]
+    assert "2 left out because the condition met a missing value (file lines 7, 9)" in flow.rows[-1].head.note
+    assert [cell.text for cell in shared.rows[0].cells] == ["40", "8", "0"]
+
+
+def test_weights_of_the_plan_are_printed(make: Make, plan: Any) -> None:
+    record = make(plan(id="one", p=[0.01, 0.02]))
+    family = replace(record.families[0], given={"weights": [0.75, 0.25]})
+    claims = view(replace(record, families=(family,)), ()).promised.families[0].hypotheses.rows
+    assert [row.cells[0].note for row in claims] == ["Weight: 0.75.", "Weight: 0.25."]
 
 
 def test_numbers_of_a_column_stand_under_each_other(make: Make, plan: Any) -> None:

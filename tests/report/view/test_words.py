@@ -111,6 +111,13 @@ def test_the_trail_says_where_another_rank_counts(make: Make, plan: Any) -> None
     assert "running maximum" in " ".join(table.notes)
 
 
+def test_what_is_no_multiple_of_p_is_said_in_words(make: Make, plan: Any) -> None:
+    nothing = [float("nan")]
+    line = lines_of(make(plan(id="one", p=[0.01], changes={"factor": nothing})))[0]
+    worded = replace(line, hypothesis=replace(line.hypothesis, arithmetic="P(Q > 3.41), 4 groups, 76 df"))
+    assert arithmetic(worded) == "P(Q > 3.41), 4 groups, 76 df = 0.01"
+
+
 def test_the_trail_says_how_p_enters(make: Make, plan: Any) -> None:
     doubled = lines_of(make(plan(id="one", p=[0.01, None], entered_as="doubled", level_is="two_sided")))
     assert entered(doubled[0]) == "0.02: 0.01 doubled, because the level is two-sided"

@@ -105,12 +105,12 @@ def broken(label: str) -> str:
     return "\n".join(lines)
 
 
-def put_mark(axes: "Axes", x: float, y: float, state: State, *, size: float = 6.5) -> None:
-    """Draw the point of a hypothesis."""
+def put_marks(axes: "Axes", places: Sequence[tuple[float, float]], state: State, *, size: float = 6.5) -> None:
+    """Draw the points of hypotheses in one state."""
     mark = MARKS[state]
     axes.plot(
-        [x], [y], marker=mark.marker, markersize=size, markeredgecolor=mark.edge, markerfacecolor=mark.face,
-        markeredgewidth=1.3, linestyle="none", zorder=5, clip_on=False,
+        [x for x, _ in places], [y for _, y in places], marker=mark.marker, markersize=size, linestyle="none", zorder=5,
+        markeredgecolor=mark.edge, markerfacecolor=mark.face, markeredgewidth=size / 5, clip_on=False,
     )  # fmt: skip
 
 

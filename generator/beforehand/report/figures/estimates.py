@@ -14,7 +14,7 @@ from beforehand.report.figures.canvas import (
     canvas,
     legend_words,
     plain_ticks,
-    put_mark,
+    put_marks,
 )
 from beforehand.report.figures.model import Figure
 from beforehand.spelling import NOTHING, between, decimal, percent, short, with_unit
@@ -150,7 +150,7 @@ def _draw_row(axes: "Axes", y: int, one: Estimate) -> None:
         _draw_interval(axes, y, (one["lower"], one["upper"]), colour, width=2.6)
     if one["matching_lower"] is not None:
         _draw_interval(axes, y + 0.28, (one["matching_lower"], one["matching_upper"]), colour, width=0.9, caps=True)
-    put_mark(axes, one["estimate"] or 0.0, y, one["state"])
+    put_marks(axes, [(one["estimate"] or 0.0, y)], one["state"])
 
 
 def _draw_interval(

@@ -2,7 +2,7 @@
 
 from collections.abc import Mapping
 
-from beforehand.record.model import ExclusionRecord, MissingRecord, Record, RowsRecord
+from beforehand.record.model import AnalysisSetRecord, ExclusionRecord, MissingRecord, Record, RowsRecord
 from beforehand.report.view import tables
 from beforehand.report.view.headings import HEADINGS
 from beforehand.report.view.model import Analysed, AnalysedData, Cell, Row, Table
@@ -10,6 +10,7 @@ from beforehand.spelling import MINUS, integer
 
 # More groups than this are written as a list in one cell.
 GROUPS_AS_COLUMNS = 6
+LINES_NAMED = 8
 
 KNOWN_AT = {"before_allocation": "known before allocation", "after_allocation": "known only after allocation"}
 
@@ -20,7 +21,7 @@ def analysed(record: Record) -> Analysed:
 
 
 def _data(rows: RowsRecord) -> AnalysedData:
-    found = [_flow(rows), _missing(rows), _derived(rows)]
+    found = [_flow(rows), _overlaps(rows), _missing(rows), _derived(rows)]
     return AnalysedData(
         title=f"Data set {rows.data}", sentences=_sentences(rows), tables=tuple(table for table in found if table.rows)
     )
@@ -85,7 +86,7 @@ def _flow(rows: RowsRecord) -> Table:
     body.append(Row(head=Cell("Analysed"), cells=_cells(rows, rows.analysed, rows.analysed_by_group), style="total"))
     body += [
         Row(
-            head=Cell(f"Analysis set {one.id}", note=f"{one.where or 'all rows'}; {one.principle.replace('_', ' ')}"),
+            head=Cell(f"Analysis set {one.id}", note=_set(one)),
             cells=_cells(rows, one.rows, one.by_group),
         )
         for one in rows.analysis_sets
@@ -94,10 +95,33 @@ def _flow(rows: RowsRecord) -> Table:
 
 
 def _rule(rule: ExclusionRecord) -> str:
-    undecided = ""
-    if rule.undecided:
-        undecided = f"; {integer(rule.undecided)} kept because the condition met a missing value"
-    return f"{rule.where}; {KNOWN_AT.get(rule.known_at, rule.known_at)}{undecided}"
+    kept = _undecided(rule.undecided, rule.undecided_lines, "kept")
+    return f"{rule.where}; {KNOWN_AT.get(rule.known_at, rule.known_at)}{kept}"
+
+
+def _undecided(rows: int, lines: tuple[int, ...], what: str) -> str:
+    if not rows:
+        return ""
+    more = f" and {integer(len(lines) - LINES_NAMED)} more" if len(lines) > LINES_NAMED else ""
+    where = f" (file lines {', '.join(map(str, lines[:LINES_NAMED]))}{more})" if lines else ""
+    return f"; {integer(rows)} {what} because the condition met a missing value{where}"
+
+
+def _set(one: AnalysisSetRecord) -> str:
+    left_out = _undecided(one.undecided, one.undecided_lines, "left out")
+    return f"{one.where or 'all rows'}; {one.principle.replace('_', ' ') or 'no principle stated'}{left_out}"
+
+
+def _overlaps(rows: RowsRecord) -> Table:
+    body = tuple(
+        Row(
+            head=Cell(f"{one.first} and {one.second}"),
+            cells=tuple(Cell(integer(count), "number") for count in (one.both, one.only_first, one.only_second)),
+        )
+        for one in rows.overlaps
+    )
+    names = ("Analysis sets", "In both", "Only in the first", "Only in the second")
+    return Table(caption="Rows that analysis sets share", head=tables.head(*names, numbers=(1, 2, 3)), rows=body)
 
 
 def _with_missing(rows: RowsRecord) -> tuple[MissingRecord, ...]:

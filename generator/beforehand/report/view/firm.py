@@ -3,10 +3,9 @@
 import math
 
 from beforehand.record.model import Record
-from beforehand.report.view import tables
 from beforehand.report.view.headings import HEADINGS, section
 from beforehand.report.view.lines import IN_FULL, Line, foremost
-from beforehand.report.view.model import Cell, Plain, Row, Table
+from beforehand.report.view.model import Cell, Head, Plain, Row, Table
 from beforehand.report.view.written import MET
 from beforehand.spelling import NOTHING, exact, integer, p_value, short
 from beforehand.terms import STATE_WORDS, State
@@ -52,8 +51,12 @@ def _table(lines: tuple[Line, ...]) -> Table:
         )
         for line in lines
     )
-    names = ("Hypothesis", "Decision", "Adjusted p", "Threshold", "Margin", "m planned", "Stands up to m =")
-    return Table(caption="Margins", head=tables.head(*names, numbers=(5, 6)), rows=tuple(body), style="margins")
+    head = (
+        Head(text="Hypothesis"), Head(text="Decision", style="next"), Head(text="Adjusted p", style="p"),
+        Head(text="Threshold", style="p"), Head(text="Margin"), Head(text="m planned", style="number"),
+        Head(text="Stands up to m =", style="number"),
+    )  # fmt: skip
+    return Table(caption="Margins", head=(head,), rows=tuple(body), style="margins")
 
 
 def margin(line: Line) -> str:

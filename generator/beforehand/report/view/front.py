@@ -57,7 +57,7 @@ def _facts(record: Record) -> tuple[Fact, ...]:
     study = record.study
     return (
         Fact("Prepared by", ", ".join(study.prepared_by) or "not stated in the spec"),
-        Fact("Dated", f"{study.dated}, as the spec says" if study.dated else "no date in the spec; no clock was read"),
+        Fact("Dated in the spec", study.dated or "no date; no clock was read"),
         Fact("Protocol", study.protocol or "not stated in the spec"),
     )
 

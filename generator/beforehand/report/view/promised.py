@@ -9,7 +9,7 @@ from beforehand.report.view.headings import HEADINGS, section
 from beforehand.report.view.lines import IN_FULL, Line
 from beforehand.report.view.model import Cell, Drawing, Fact, Promised, PromisedFamily, Row, Table, drawing
 from beforehand.report.view.sentences import claim
-from beforehand.spelling import integer, percent
+from beforehand.spelling import exact, integer, percent
 
 SIDES = {
     "above": "one-sided, above",
@@ -68,7 +68,9 @@ def _is_familywise(family: FamilyRecord) -> bool:
 def _chain(record: Record) -> tuple[Fact, ...]:
     if record.scheme not in ("serial", "parallel") or len(record.families) < 2:
         return ()
-    return tuple(Fact(family.id, _gate(family)) for family in record.families if family.under_study_promise)
+    families = {family.id: family for family in record.families}
+    order = record.order or tuple(one.id for one in record.families if one.under_study_promise)
+    return tuple(Fact(name, _gate(families[name])) for name in order)
 
 
 def _gate(family: FamilyRecord) -> str:
@@ -99,7 +101,7 @@ def _sizes(family: FamilyRecord) -> str:
 
 
 def _hypotheses(members: tuple[Line, ...]) -> Table:
-    said = [_said(line.hypothesis) for line in members]
+    said = [_said(line) for line in members]
     common = {name for name in SAID if len(members) > 1 and len({one[name] for one in said}) == 1}
     rows = (_hypothesis(line, _listed(one, set(SAID) - common)) for line, one in zip(members, said, strict=True))
     return Table(
@@ -109,12 +111,16 @@ def _hypotheses(members: tuple[Line, ...]) -> Table:
     )  # fmt: skip
 
 
-SAID = ("Null hypothesis", "Margin", "Estimand")
+SAID = ("Null hypothesis", "Margin", "Weight", "Place in the order", "Estimand")
 
 
-def _said(hypothesis: HypothesisRecord) -> dict[str, str]:
+def _said(line: Line) -> dict[str, str]:
+    hypothesis, given = line.hypothesis, line.family.given
+    at = line.family.members.index(line.id)
+    weight = exact(given["weights"][at]) if "weights" in given else ""
+    place = integer(given["positions"][at] + 1) if "positions" in given else ""
     estimand = "; ".join(f"{name.replace('_', ' ')}: {text}" for name, text in hypothesis.estimand.items())
-    return dict(zip(SAID, (hypothesis.null_in_words, hypothesis.margin_basis, estimand), strict=True))
+    return dict(zip(SAID, (hypothesis.null_in_words, hypothesis.margin_basis, weight, place, estimand), strict=True))
 
 
 def _listed(said: dict[str, str], names: set[str]) -> str:
@@ -159,6 +165,8 @@ def _grouped(lines: tuple[Line, ...], key: Callable[[HypothesisRecord], Kind]) -
 
 def _use(hypothesis: HypothesisRecord) -> Kind:
     rows = ", ".join(part for part in (hypothesis.analysis_set, hypothesis.where) if part) or "all rows"
+    if hypothesis.undecided:
+        rows = f"{rows} ({integer(hypothesis.undecided)} left out: the condition met a missing value)"
     missing = hypothesis.missing_method.replace("_", " ") or "not stated"
     if hypothesis.missing_mechanism:
         missing = f"{missing} ({hypothesis.missing_mechanism})"

@@ -76,10 +76,10 @@ def arithmetic(line: Line) -> str:
 
 
 def _multiplication(line: Line) -> str:
-    factor, p = line.number("factor"), line.number("p_entered")
+    factor, product = line.number("factor"), line.number("product")
     if math.isnan(factor):
-        return f"adjusted p {calculated(line.number('p_family'), line.threshold)}"
-    written = multiplication(p, factor, rank=line.count("rank"), threshold=line.threshold)
+        return f"{line.hypothesis.arithmetic or 'product'} = {calculated(product, line.threshold)}"
+    written = multiplication(line.number("p_entered"), factor, rank=line.count("rank"), threshold=line.threshold)
     return f"{written.p} × {written.factor} = {written.product}"
 
 
