@@ -1,5 +1,6 @@
 """What is installed is what the tree holds: packages, templates, fonts, the command, the public names."""
 
+import os
 import subprocess
 import sys
 import tomllib
@@ -68,3 +69,16 @@ def test_the_package_is_typed_and_its_names_are_there() -> None:
         assert getattr(beforehand, name) is not None
     with pytest.raises(AttributeError, match="module 'beforehand' has no attribute 'nothing'"):
         beforehand.nothing  # noqa: B018
+
+
+def test_help_takes_at_most_twice_the_time_of_importing_click() -> None:
+    def seconds(*arguments: str) -> float:
+        times = []
+        for _ in range(7):
+            before = os.times()
+            subprocess.run([sys.executable, *arguments], capture_output=True, check=True)
+            after = os.times()
+            times.append(after.children_user + after.children_system - before.children_user - before.children_system)
+        return min(times)  # processor time; the quickest of several, for the machine is shared
+
+    assert seconds("-m", "beforehand", "--help") <= 2 * seconds("-c", "import click")

@@ -158,12 +158,10 @@ def _entered(ask: Ask, family: PlannedFamily, hypothesis: Hypothesis, p: float, 
 
 def _side(ask: Ask, hypothesis: Hypothesis) -> str:
     """Say whether the data lean to the side of the claim; at its null value an estimate leans to neither."""
+    if hypothesis.claim_direction not in ("above", "below"):
+        return ""
     null_value = hypothesis.null_hypothesis.margins[0]
     above, below = _p(ask, null_value, "above"), _p(ask, null_value, "below")
-    neither = abs(above - below) <= EQUAL_SIDES * min(above, below)
-    match hypothesis.claim_direction:
-        case "above":
-            return "yes" if above < below or neither else "no"
-        case "below":
-            return "yes" if below < above or neither else "no"
-    return ""
+    if abs(above - below) <= EQUAL_SIDES * min(above, below):
+        return "yes"
+    return "yes" if (above < below) == (hypothesis.claim_direction == "above") else "no"
