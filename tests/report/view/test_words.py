@@ -41,7 +41,7 @@ def test_every_state_has_a_sentence(make: Make, plan: Any, state: State) -> None
     [
         ("rejected", "Shown:", "Drill 1 − hand: emergence is slower."),
         ("rejected_against_claim", "Against the claim:", "a finding against the claim"),
-        ("not_rejected", "Not shown:", "That does not show the contrary."),
+        ("not_rejected", "Not shown:", "Nor is the contrary shown."),
         ("not_tested", "Not tested:", "No claim is made"),
         ("no_result", "No result:", "counts with p = 1"),
         ("described", "Described only:", "asks for no decision"),

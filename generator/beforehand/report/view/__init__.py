@@ -42,6 +42,6 @@ def view(record: Record, figures: tuple[Figure, ...]) -> View:
         firmness=firmness(record, lines),
         second=second(record),
         checklist=checklist(record),
-        methods=methods(record, number),
+        methods=methods(record, number, digits),
         appendix=appendix(record, lines),
     )

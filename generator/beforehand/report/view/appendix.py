@@ -1,8 +1,6 @@
 """Every test in full: all of them on screen, in chunks; as many as the spec allows in print."""
 
 import math
-from collections.abc import Iterable
-from itertools import islice
 
 from beforehand.record.canonical import results_bytes, sha256
 from beforehand.record.model import Record
@@ -17,12 +15,14 @@ from beforehand.terms import STATE_WORDS
 # A browser lays out only the chunks in view; a table of thousands of rows in one piece makes it wait.
 CHUNK = 200
 
-COLUMNS = (
-    "Hypothesis", "Test", "n", "Estimate", "From", "To", "Level", "SE", "Statistic", "df", "Unadjusted p",
-    "Enters with", "Rank", "Factor", "Adjusted p, family", "Adjusted p, study", "Threshold", "Decision", "Stands to",
-)  # fmt: skip
-NUMBERS = (2, 3, 4, 5, 6, 7, 8, 9, 12, 13, 18)
-P_VALUES = (10, 11, 14, 15, 16)
+COLUMNS = {
+    "Hypothesis": "", "Test": "", "n": "number", "Estimate": "number", "From": "number", "To": "number",
+    "Level": "number", "SE": "number", "Statistic": "number", "df": "number", "Unadjusted p": "p", "Enters with": "p",
+    "Rank": "number", "Factor": "number", "Adjusted p, family": "p", "Adjusted p, study": "p", "Threshold": "p",
+    "Decision": "next", "Stands to": "number",
+}  # fmt: skip
+STYLES = tuple(COLUMNS.values())
+HEAD = (tuple(Head(text=text, style=style) for text, style in COLUMNS.items()),)
 EXPLAINED = (
     Fact("n", "analysed units of the first + the second group, or pairs"),
     Fact("From, To, Level", "the unadjusted interval and its confidence"),
@@ -36,41 +36,28 @@ EXPLAINED = (
 def appendix(record: Record, lines: tuple[Line, ...]) -> dict[str, Appendix]:
     """Write the section for each medium."""
     printed = foremost(lines, record.appendix_rows)
+    file = f"tests.csv, SHA-256 {checksum(sha256(results_bytes(record.results)))}"
+    whole = f"All {integer(len(lines))} hypotheses. The same rows with full precision: {file}."
+    part = (
+        f"{integer(len(printed))} of {integer(len(lines))} hypotheses: rejections first, then the nearest misses. All "
+        f"rows, with full precision, are in {file}."
+    )
     return {
-        "screen": _appendix(lines, _lead(record, len(lines), len(lines))),
-        "print": _appendix(printed, _lead(record, len(printed), len(lines))),
+        "screen": _appendix(lines, whole),
+        "print": _appendix(printed, part if len(printed) < len(lines) else whole),
     }
 
 
-def _lead(record: Record, shown: int, of_all: int) -> tuple[str, ...]:
-    file = f"tests.csv, SHA-256 {checksum(sha256(results_bytes(record.results)))}"
-    if shown == of_all:
-        return (f"All {integer(of_all)} hypotheses. The same rows with full precision: {file}.",)
-    return (
-        f"{integer(shown)} of {integer(of_all)} hypotheses: rejections first, then the nearest misses. All rows, with "
-        f"full precision, are in {file}.",
-    )
-
-
-def _appendix(lines: tuple[Line, ...], lead: tuple[str, ...]) -> Appendix:
-    chunks = tuple(_chunk(tuple(part), start, len(lines)) for start, part in _parts(lines))
-    return Appendix(heading=HEADINGS["appendix"], sentences=lead, chunks=chunks, columns=EXPLAINED)
-
-
-def _parts(lines: tuple[Line, ...]) -> Iterable[tuple[int, Iterable[Line]]]:
-    for start in range(0, len(lines), CHUNK):
-        yield start, islice(lines, start, start + CHUNK)
-
-
-def _head() -> tuple[tuple[Head, ...], ...]:
-    styles = {**dict.fromkeys(NUMBERS, "number"), **dict.fromkeys(P_VALUES, "p")}
-    return (tuple(Head(text=text, style=styles.get(at, "")) for at, text in enumerate(COLUMNS)),)
+def _appendix(lines: tuple[Line, ...], lead: str) -> Appendix:
+    starts = range(0, len(lines), CHUNK)
+    chunks = tuple(_chunk(lines[start : start + CHUNK], start, len(lines)) for start in starts)
+    return Appendix(heading=HEADINGS["appendix"], sentences=(lead,), chunks=chunks, columns=EXPLAINED)
 
 
 def _chunk(lines: tuple[Line, ...], start: int, of_all: int) -> Table:
     last = start + len(lines)
     part = f", {integer(start + 1)} to {integer(last)} of {integer(of_all)}" if of_all > CHUNK else ""
-    return Table(caption=f"Tests{part}", head=_head(), rows=tuple(_row(line) for line in lines), style="tests")
+    return Table(caption=f"Tests{part}", head=HEAD, rows=tuple(_row(line) for line in lines), style="tests")
 
 
 def _row(line: Line) -> Row:
@@ -79,13 +66,15 @@ def _row(line: Line) -> Row:
         line.values["test"].replace("_", " "), _size(line), numbers.estimate, numbers.lower, numbers.upper,
         _percent(line), numbers.standard_error, statistic(line), degrees(line), p_of(line), p_of(line, "p_entered"),
         integer(line.count("rank")), short(line.number("factor"), 5), p_of(line, "p_family"), p_of(line, "p_study"),
-        exact(line.threshold), STATE_WORDS[line.state], integer(line.count("survives_up_to") or 0),
+        exact(line.threshold), STATE_WORDS[line.state], _survives(line),
     )  # fmt: skip
-    styles = {**dict.fromkeys(NUMBERS, "number"), **dict.fromkeys(P_VALUES, "p")}
-    cells = [Cell(text, styles.get(at, "")) for at, text in enumerate(texts, 1)]
-    cells[-2] = Cell(STATE_WORDS[line.state], f"state {line.state.replace('_', '-')}")
-    cells[-1] = Cell(texts[-1] if line.count("survives_up_to") else NOTHING, "number")
+    state = f"state {line.state.replace('_', '-')}"
+    cells = (Cell(text, state if style == "next" else style) for text, style in zip(texts, STYLES[1:], strict=True))
     return Row(head=Cell(line.label, note="" if line.label == line.id else line.id), cells=tuple(cells))
+
+
+def _survives(line: Line) -> str:
+    return integer(line.count("survives_up_to")) if line.count("survives_up_to") else NOTHING
 
 
 def _size(line: Line) -> str:

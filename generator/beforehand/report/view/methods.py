@@ -4,7 +4,7 @@ from beforehand.record.model import MethodRecord, Record
 from beforehand.report.view import tables
 from beforehand.report.view.headings import HEADINGS
 from beforehand.report.view.model import Cell, Methods, Row, Table
-from beforehand.spelling import INTERVAL_RULE, P_RULE
+from beforehand.spelling import INTERVAL_RULE, P_RULE, checksum
 
 CAUTIONS = (
     "This report replaces neither a qualified statistician nor the rules of the authority it is addressed to.",
@@ -16,7 +16,7 @@ CAUTIONS = (
 SIGNING = ("Author", "Reviewer", "Approver")
 
 
-def methods(record: Record, number: str) -> Methods:
+def methods(record: Record, number: str, results_sha256: str) -> Methods:
     """Write the section."""
     return Methods(
         heading=HEADINGS["methods"],
@@ -32,7 +32,10 @@ def methods(record: Record, number: str) -> Methods:
             caption=f"Sign-off of report {number}",
             head=tables.head("Meaning", "Printed name", "Date and time (UTC)", "Signature"),
             rows=tuple(Row(head=Cell(who), cells=(Cell(""), Cell(""), Cell(""))) for who in SIGNING),
-            notes=("Left empty by beforehand. A signature refers to the record with this report's results checksum.",),
+            notes=(
+                "Left empty by beforehand. A signature is for the results with this checksum (SHA-256 of record.json): "
+                f"{checksum(results_sha256)}.",
+            ),
             style="sign-off",
         ),
     )

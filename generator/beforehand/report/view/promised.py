@@ -120,7 +120,9 @@ def _said(line: Line) -> dict[str, str]:
     weight = exact(given["weights"][at]) if "weights" in given else ""
     place = integer(given["positions"][at] + 1) if "positions" in given else ""
     estimand = "; ".join(f"{name.replace('_', ' ')}: {text}" for name, text in hypothesis.estimand.items())
-    return dict(zip(SAID, (hypothesis.null_in_words, hypothesis.margin_basis, weight, place, estimand), strict=True))
+    # Without a claim the alternative stands in its place, in the same words as the null.
+    null = hypothesis.null_in_words if hypothesis.claim else ""
+    return dict(zip(SAID, (null, hypothesis.margin_basis, weight, place, estimand), strict=True))
 
 
 def _listed(said: dict[str, str], names: set[str]) -> str:

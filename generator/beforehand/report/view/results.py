@@ -91,8 +91,13 @@ def decisions_table(lines: tuple[Line, ...]) -> Table:
     return Table(
         caption=f"Tests and adjusted p-values, family {family.id}", head=(tuple(head),), style="decisions",
         notes=tuple(_notes(lines)),
-        rows=tables.rows((Cell(line.label) for line in lines), tables.columns(*cells)),
+        rows=tables.rows((_named(line, name == "Statistic") for line in lines), tables.columns(*cells)),
     )  # fmt: skip
+
+
+def _named(line: Line, named: bool) -> Cell:
+    name = line.hypothesis.statistic_name
+    return Cell(line.label, note=f"statistic: {name}" if named and name else "")
 
 
 ADJUSTED = {"p_family": "Adjusted p, family", "p_study": "Adjusted p, study"}

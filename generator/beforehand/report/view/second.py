@@ -13,9 +13,9 @@ def second(record: Record) -> Plain:
     return Plain(
         heading=HEADINGS["second"],
         sentences=(
-            "Every decided statistic and every adjusted p was worked out a second time, from the typed columns on, by "
-            "another formula, algorithm or library. A different decision, or a disagreement above what is accepted, "
-            "would have stopped this report.",
+            "Every decided statistic and every adjusted p was worked out a second time, from the columns of the data "
+            "on, by another formula, algorithm or library. A different decision, or a disagreement above what is "
+            "accepted, would have stopped this report.",
             "This guards against slips of computation; it is not independent double programming.",
         ),
         tables=tuple(found),

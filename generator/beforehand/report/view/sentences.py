@@ -54,7 +54,7 @@ def _against(line: Line) -> str:
 
 
 def _not_rejected(line: Line) -> str:
-    return f"{_quoted(line)} That does not show the contrary."
+    return f"{_quoted(line)} Nor is the contrary shown."
 
 
 def _not_tested(line: Line) -> str:
