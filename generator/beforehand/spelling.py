@@ -137,18 +137,15 @@ def multiplication(p: float, factor: float, *, rank: int, threshold: float = mat
     """
     product = calculated(p * factor, threshold)
     whole = round(factor * rank)
-    if factor == round(factor):
-        written, value = integer(round(factor)), float(round(factor))
-    elif math.isclose(factor * rank, whole, rel_tol=1e-12):
-        written, value = f"{integer(whole)}/{integer(rank)}", whole / rank
-    else:
-        written = short(factor, 10)
-        value = read(written)
+    above, below = factor, 1
+    if math.isclose(factor * rank, whole, rel_tol=TOLERANCE) and factor != round(factor):
+        above, below = float(whole), rank
+    written = integer(round(above)) if above == round(above) else short(above, 10)
     for digits in range(4, MOST_DIGITS):
         shown = short(p, digits)
-        if calculated(read(shown) * value, threshold) == product:
+        if calculated(read(shown) * read(written) / below, threshold) == product:
             break
-    return Multiplication(shown, written, product)
+    return Multiplication(shown, f"{written}/{integer(below)}" if below > 1 else written, product)
 
 
 def calculated(value: float, threshold: float = math.nan) -> str:

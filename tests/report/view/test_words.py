@@ -20,7 +20,7 @@ from beforehand.terms import State
 
 Make = Callable[..., Record]
 P = st.one_of(st.none(), st.floats(min_value=1e-9, max_value=1.0))
-DRAWN = settings(max_examples=40, suppress_health_check=[HealthCheck.function_scoped_fixture], deadline=None)
+DRAWN = settings(max_examples=200, suppress_health_check=[HealthCheck.function_scoped_fixture], deadline=None)
 
 
 def one_line(make: Make, plan: Any, state: State) -> Line:
