@@ -1,7 +1,6 @@
 """Page one: the decisions, what they are held against, and how to check them."""
 
 from collections.abc import Iterable
-from itertools import islice
 
 from beforehand.record.model import FamilyRecord, Record
 from beforehand.report.view import criteria, sentences
@@ -12,10 +11,11 @@ from beforehand.spelling import checksum, integer
 from beforehand.terms import STATE_WORDS, Intent, Severity, State
 
 SHOWN_ON_PAGE_ONE = 3
+AGAINST_ON_PAGE_ONE = 8
 ALWAYS_COUNTED: tuple[State, ...] = ("rejected", "not_rejected")
 SEVERITIES: tuple[Severity, ...] = ("objection", "caution", "note")
 
-KINDS: dict[Intent, str] = {"confirmatory": "Confirmatory study", "exploratory": "Exploratory study"}
+KINDS: dict[Intent, str] = {"confirmatory": "Declared confirmatory, not sealed", "exploratory": "Exploratory study"}
 
 NOT_SEALED = (
     "Not sealed: this version of beforehand keeps no sealed plans. That the plan was written before the data were "
@@ -36,14 +36,16 @@ COMMANDS = (
 def front(record: Record, lines: tuple[Line, ...], results_sha256: str) -> Front:
     """Write page one."""
     shown = [line for line in lines if line.state == "rejected"]
+    against = [line for line in lines if line.state == "rejected_against_claim"]
     return Front(
         kind=KINDS[record.study.intent],
         facts=_facts(record),
         verdict=sentences.family_verdict(_states(record.families)),
         reading=_reading(record),
-        against=_findings(line for line in lines if line.state == "rejected_against_claim"),
-        shown=_findings(islice(shown, SHOWN_ON_PAGE_ONE)),
-        more_shown=_more(len(shown)),
+        against=_findings(against[:AGAINST_ON_PAGE_ONE]),
+        more_against=_more(len(against) - AGAINST_ON_PAGE_ONE),
+        shown=_findings(shown[:SHOWN_ON_PAGE_ONE]),
+        more_shown=_more(len(shown) - SHOWN_ON_PAGE_ONE),
         promises=criteria.promises(record),
         alarms=_alarms(record),
         families=families_table(record),
@@ -66,11 +68,8 @@ def _findings(lines: Iterable[Line]) -> tuple[Finding, ...]:
     return tuple(sentences.finding(line) for line in lines)
 
 
-def _more(shown: int) -> str:
-    more = shown - SHOWN_ON_PAGE_ONE
-    if more < 1:
-        return ""
-    return f"{integer(more)} more in {section('results')} and {section('appendix')}."
+def _more(more: int) -> str:
+    return f"{integer(more)} more in {section('results')} and {section('appendix')}." if more > 0 else ""
 
 
 def _states(families: Iterable[FamilyRecord]) -> dict[State, int]:

@@ -116,6 +116,7 @@ class Front:
     reading: str
     """How a rejection is to be read in a study of this intent."""
     against: tuple[Finding, ...]
+    more_against: str
     shown: tuple[Finding, ...]
     more_shown: str
     promises: tuple[str, ...]
