@@ -84,9 +84,9 @@ def record_bytes(record: Record) -> bytes:
     return json_bytes(_plain(content))
 
 
-def report_number(record: Record) -> str:
+def report_number(record: Record, results_sha256: str) -> str:
     """Give the report's number: the study's identifier with the first 8 digits of the results checksum."""
-    return f"{record.study.identifier}.{sha256(record_bytes(record))[:8]}"
+    return f"{record.study.identifier}.{results_sha256[:8]}"
 
 
 def _plain(value: Any) -> Any:

@@ -8,6 +8,7 @@ import time
 from collections.abc import Callable
 from dataclasses import dataclass, field, fields, replace
 from datetime import UTC, datetime
+from functools import cached_property
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
@@ -49,7 +50,12 @@ class Run:
     @property
     def identifier(self) -> str:
         """The report's number."""
-        return report_number(self.record)
+        return report_number(self.record, self.results_sha256)
+
+    @cached_property
+    def results_sha256(self) -> str:
+        """The results checksum: SHA-256 of record.json."""
+        return sha256(record_bytes(self.record))
 
     @property
     def tests(self) -> "pd.DataFrame":
@@ -116,7 +122,7 @@ class Run:
             "checksums": {
                 "plan": self.record.plan_sha256,
                 "data": self.record.data_sha256,
-                "results": sha256(record_bytes(self.record)),
+                "results": self.results_sha256,
             },
         }
 

@@ -142,3 +142,14 @@ def test_a_bound_is_the_end_the_test_looks_at(make: Make, plan: Any) -> None:
 def test_counts_add_up() -> None:
     verdict = family_verdict({"rejected": 2, "not_rejected": 1, "no_result": 1})
     assert verdict == "4 null hypotheses: 2 rejected; 1 not rejected; 1 without a result."
+
+
+def test_characters_without_a_glyph_are_named(make: Make, plan: Any) -> None:
+    """U+51B7 is a Chinese character, which none of the bundled fonts has."""
+    record = make(plan(id="one", p=[0.01]))
+    titled = replace(record, study=replace(record.study, title="\N{CJK UNIFIED IDEOGRAPH-51B7} stores"))
+    said = view(titled, ()).methods.spelling
+    assert said[-1] == (
+        "The fonts of this report lack 1 of the characters in the study's texts; they are shown by their codes: U+51B7."
+    )
+    assert not any("lack" in text for text in view(record, ()).methods.spelling)

@@ -25,7 +25,7 @@ def view(record: Record, figures: tuple[Figure, ...]) -> View:
     """Put a record into words."""
     lines = lines_of(record)
     digits = sha256(record_bytes(record))
-    number = report_number(record)
+    number = report_number(record, digits)
     return View(
         title=record.study.title,
         identifier=record.study.identifier,

@@ -1,6 +1,7 @@
 """Methods and references actually used, how numbers are written, cautions, and the empty block for signatures."""
 
 from beforehand.record.model import MethodRecord, Record
+from beforehand.report.characters import replaced_characters
 from beforehand.report.view import tables
 from beforehand.report.view.headings import HEADINGS
 from beforehand.report.view.model import Cell, Methods, Row, Table
@@ -26,7 +27,12 @@ def methods(record: Record, number: str, results_sha256: str) -> Methods:
             rows=tuple(_method(method) for method in record.methods),
             style="methods",
         ),
-        spelling=(P_RULE, INTERVAL_RULE, "Full precision is kept in tests.csv and record.json."),
+        spelling=(
+            P_RULE,
+            INTERVAL_RULE,
+            "Full precision is kept in tests.csv and record.json.",
+            *_replaced(record),
+        ),
         cautions=CAUTIONS,
         sign_off=Table(
             caption=f"Sign-off of report {number}",
@@ -38,6 +44,16 @@ def methods(record: Record, number: str, results_sha256: str) -> Methods:
             ),
             style="sign-off",
         ),
+    )
+
+
+def _replaced(record: Record) -> tuple[str, ...]:
+    codes = replaced_characters(record)
+    if not codes:
+        return ()
+    return (
+        f"The fonts of this report lack {len(codes)} of the characters in the study's texts; they are shown by their "
+        f"codes: {', '.join(codes)}.",
     )
 
 

@@ -111,7 +111,7 @@ def _hypotheses(members: tuple[Line, ...]) -> Table:
     )  # fmt: skip
 
 
-SAID = ("Null hypothesis", "Margin", "Weight", "Place in the order", "Estimand")
+SAID = ("Null hypothesis", "Margin", "Weight", "Place in the order", "Options of the test", "Estimand")
 
 
 def _said(line: Line) -> dict[str, str]:
@@ -122,7 +122,15 @@ def _said(line: Line) -> dict[str, str]:
     estimand = "; ".join(f"{name.replace('_', ' ')}: {text}" for name, text in hypothesis.estimand.items())
     # Without a claim the alternative stands in its place, in the same words as the null.
     null = hypothesis.null_in_words if hypothesis.claim else ""
-    return dict(zip(SAID, (null, hypothesis.margin_basis, weight, place, estimand), strict=True))
+    options = "; ".join(f"{name.replace('_', ' ')}: {_option(value)}" for name, value in hypothesis.options.items())
+    return dict(zip(SAID, (null, hypothesis.margin_basis, weight, place, options, estimand), strict=True))
+
+
+def _option(value: object) -> str:
+    """Write the value of an option as a reader sees it: yes and no, words without underscores."""
+    if isinstance(value, bool):
+        return "yes" if value else "no"
+    return str(value).replace("_", " ")
 
 
 def _listed(said: dict[str, str], names: set[str]) -> str:
