@@ -13,7 +13,7 @@ from numpy.typing import ArrayLike, NDArray
 
 REFERENCES = Path(__file__).parents[1] / "references" / "p_values"
 # how the entries that hold several procedures abbreviate one of them
-SHORT = {"benjamini_hochberg": "bh"}
+SHORT = {"benjamini_hochberg": "bh", "benjamini_yekutieli": "by"}
 
 
 @dataclass(frozen=True)

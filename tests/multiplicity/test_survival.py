@@ -6,10 +6,11 @@ from math import floor
 
 import numpy as np
 import pytest
+from multiplicity.given import options_for
 
 from beforehand.multiplicity.contract import PROCEDURES
 from beforehand.multiplicity.decision import is_rejected
-from beforehand.multiplicity.survival import LARGEST_TRIED, largest_families, largest_family
+from beforehand.multiplicity.survival import LARGEST_TRIED, can_grow, largest_families, largest_family
 
 LEVEL = 0.05
 A = Fraction(LEVEL) * (1 + Fraction(1, 10**12))  # with the tolerance of the decision
@@ -51,14 +52,20 @@ def test_closed_forms(name: str, seed: int) -> None:
         assert largest_family(PROCEDURES[name], p, index, level=LEVEL) == found[index]
 
 
-@pytest.mark.parametrize("name", list(PROCEDURES))
+@pytest.mark.parametrize("name", [name for name in PROCEDURES if can_grow(PROCEDURES[name])])
 def test_one_more_would_be_one_too_many(name: str) -> None:
     p = [0.001, 0.02, 0.004, 0.9, 0.012]
-    for index, size in enumerate(largest_families(PROCEDURES[name], p, level=LEVEL)):
+    options = options_for(PROCEDURES[name])
+    for index, size in enumerate(largest_families(PROCEDURES[name], p, level=LEVEL, **options)):
         if 0 < size < LARGEST_TRIED:
             for m, expected in ((size, True), (size + 1, False)):
                 grown = [*p, *[1.0] * (int(m) - len(p))]
-                assert is_rejected(PROCEDURES[name](grown), LEVEL)[index] == expected
+                assert is_rejected(PROCEDURES[name](grown, **options), LEVEL)[index] == expected
+
+
+def test_all_or_none_allows_no_further_hypothesis() -> None:
+    found = largest_families(PROCEDURES["all_or_none"], [0.01, 0.02, 0.001], level=LEVEL)
+    assert found.tolist() == [3, 3, 3]
 
 
 def test_nothing_is_lost_without_adjustment() -> None:

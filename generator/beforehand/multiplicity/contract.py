@@ -1,7 +1,7 @@
 """What a multiplicity procedure takes, gives and declares, and the decorator that enters it in the catalogue."""
 
 import inspect
-from collections.abc import Callable
+from collections.abc import Callable, Iterator, Sequence
 from dataclasses import dataclass, field
 from typing import Any, Literal
 
@@ -48,12 +48,16 @@ INGREDIENTS = PER_MEMBER | PER_FAMILY
 """What an entry may ask for beyond p, by these keyword-only parameters; its other keyword-only ones are options."""
 
 
+Ranks = NDArray[np.intp]
+"""Ranks, counted from 0."""
+
+
 @dataclass(frozen=True, kw_only=True)
 class Steps:
     """How each adjusted p arises, by rank: everything a pocket calculator needs.
 
-    At level a the p-value of rank i has to meet the threshold a / factor[i]. Where an adjusted p is no multiple of p,
-    factor is NaN and ``arithmetic`` says in words where the product comes from.
+    At level a the p-value of rank i has to meet the threshold a / factor[i], or what ``thresholds`` gives. Where an
+    adjusted p is no multiple of p, factor is NaN and ``arithmetic`` says in words where the product comes from.
     """
 
     factor: Vector
@@ -62,35 +66,96 @@ class Steps:
     """factor x p (or what stands in its place), before it is made monotone and capped at 1."""
     adjusted: Vector
     """The adjusted p-value."""
-    taken_from: NDArray[np.intp]
+    taken_from: Ranks
     """The rank, counted from 0, whose product became the adjusted p."""
-    arithmetic: tuple[str, ...] = ()
+    arithmetic: Sequence[str] = ()
     """For each rank what the product is, where it is no multiple of p: "P(Q > 3.41), 4 groups, 76 df"."""
+    critical: Callable[[float], Vector] | None = field(default=None, repr=False)
+    """Gives for a level the threshold of each rank, where that isn't level / factor."""
+
+    def thresholds(self, level: float) -> Vector:
+        """Give the threshold that the p-value of each rank has to meet at a level; NaN where there is none.
+
+        Parameters
+        ----------
+        level : float
+            The level of the promise that covers the family.
+
+        Returns
+        -------
+        ndarray, shape (m,)
+            By rank. Where a procedure's thresholds depend on the p-values, they are those of these p-values.
+        """
+        return level / self.factor if self.critical is None else self.critical(level)
+
+    @classmethod
+    def of(
+        cls,
+        *,
+        factor: Vector,
+        product: Vector,
+        taken_from: Ranks,
+        arithmetic: Sequence[str] = (),
+        critical: Callable[[float], Vector] | None = None,
+    ) -> "Steps":
+        """Take each adjusted p from the product of its rank, capped at 1."""
+        return cls(
+            factor=factor,
+            product=product,
+            adjusted=np.minimum(product[taken_from], 1.0),
+            taken_from=taken_from,
+            arithmetic=arithmetic,
+            critical=critical,
+        )
+
+
+class Words(Sequence[str]):
+    """For each rank what its product is, written only when it is read; empty where there is a factor."""
+
+    def __init__(self, factor: Vector, write: Callable[[int], str]) -> None:
+        self._factor = factor
+        self._write = write
+
+    def __len__(self) -> int:
+        return self._factor.size
+
+    def __getitem__(self, rank: Any) -> Any:
+        if isinstance(rank, slice):
+            return tuple(self[i] for i in range(*rank.indices(len(self))))
+        return self._write(rank) if np.isnan(self._factor[rank]) else ""
+
+    def __iter__(self) -> Iterator[str]:
+        return (self[rank] for rank in range(len(self)))
+
+
+def largest_so_far(product: Vector) -> Ranks:
+    """Give for each rank the rank of the largest product up to it."""
+    is_largest = product >= np.maximum.accumulate(product)
+    return np.maximum.accumulate(np.where(is_largest, np.arange(product.size), 0))
+
+
+def smallest_from_here(product: Vector) -> Ranks:
+    """Give for each rank the rank of the smallest product from it on."""
+    is_smallest = product <= np.minimum.accumulate(product[::-1])[::-1]
+    last = max(product.size - 1, 0)
+    return np.minimum.accumulate(np.where(is_smallest, np.arange(product.size), last)[::-1])[::-1]
 
 
 def running_maximum(p: Ascending, *, factor: Vector) -> Steps:
     """Adjust step-down: each rank takes the largest product so far, capped at 1."""
     product = factor * p
-    adjusted = np.maximum.accumulate(product)
-    ranks = np.arange(p.size)
-    taken_from = np.maximum.accumulate(np.where(product >= adjusted, ranks, 0))
-    return Steps(factor=factor, product=product, adjusted=np.minimum(adjusted, 1.0), taken_from=taken_from)
+    return Steps.of(factor=factor, product=product, taken_from=largest_so_far(product))
 
 
 def running_minimum(p: Ascending, *, factor: Vector) -> Steps:
     """Adjust step-up: each rank takes the smallest product from its own on, capped at 1."""
     product = factor * p
-    adjusted = np.minimum.accumulate(product[::-1])[::-1]
-    ranks = np.arange(p.size)
-    last = max(p.size - 1, 0)
-    taken_from = np.minimum.accumulate(np.where(product <= adjusted, ranks, last)[::-1])[::-1]
-    return Steps(factor=factor, product=product, adjusted=np.minimum(adjusted, 1.0), taken_from=taken_from)
+    return Steps.of(factor=factor, product=product, taken_from=smallest_from_here(product))
 
 
 def each_alone(p: Ascending, *, factor: Vector) -> Steps:
     """Adjust in a single step: each rank keeps its own product, capped at 1."""
-    product = factor * p
-    return Steps(factor=factor, product=product, adjusted=np.minimum(product, 1.0), taken_from=np.arange(p.size))
+    return Steps.of(factor=factor, product=factor * p, taken_from=np.arange(p.size))
 
 
 @dataclass(frozen=True)
@@ -99,7 +164,7 @@ class Ordered:
 
     ascending: Ascending
     """The p-values in ascending order."""
-    order: NDArray[np.intp]
+    order: Ranks
     """Where each of them stood; equal values keep the order in which they came."""
 
     @classmethod
@@ -128,7 +193,7 @@ class Ordered:
         return result
 
 
-def _stable_order(values: Vector) -> NDArray[np.intp]:
+def _stable_order(values: Vector) -> Ranks:
     """Sort quickly, then put equal values back into the order in which they came: less work than a stable sort."""
     order = np.argsort(values)
     ascending = values[order]
@@ -136,7 +201,7 @@ def _stable_order(values: Vector) -> NDArray[np.intp]:
     if np.all(differs):
         return order
     run_of_equals = np.concatenate([[0], np.cumsum(differs)])
-    keys: NDArray[np.intp] = np.sort(run_of_equals * values.size + order)
+    keys: Ranks = np.sort(run_of_equals * values.size + order)
     return keys % values.size
 
 
@@ -160,6 +225,8 @@ class Procedure:
     """``WHOLE``, or the ingredient that the replay takes as recorded."""
     implies: tuple[Criterion, ...]
     """Further criteria that this control implies."""
+    monotone: bool
+    """Whether raising a p, or a further hypothesis with p = 1, never adds a rejection."""
     reference: str
     adjust: Callable[..., Steps] = field(repr=False)
 
@@ -234,14 +301,15 @@ def procedure(
     reference: str,
     no_intervals_because: str = "",
     implies: tuple[Criterion, ...] = (),
+    monotone: bool = True,
 ) -> Callable[[Callable[..., Steps]], Procedure]:
     """Enter a function on ascending p-values in the catalogue of procedures with what it declares."""
 
     def enter(adjust: Callable[..., Steps]) -> Procedure:
         return Procedure(
             title=title, controls=controls, strong=strong, valid_under=valid_under, intervals=intervals,
-            no_intervals_because=no_intervals_because, replays=replays, implies=implies, reference=reference,
-            adjust=adjust,
+            no_intervals_because=no_intervals_because, replays=replays, implies=implies, monotone=monotone,
+            reference=reference, adjust=adjust,
         )  # fmt: skip
 
     return enter

@@ -12,9 +12,11 @@ cases <- list(
   single = 0.04
 )
 cat("# program:", R.version.string, "; p.adjust of package stats; made by p_adjust.R\n")
-cat("case,p,bonferroni,holm,benjamini_hochberg\n")
+methods <- c(bonferroni = "bonferroni", holm = "holm", benjamini_hochberg = "BH", hochberg = "hochberg",
+             hommel = "hommel", benjamini_yekutieli = "BY")
+cat("case,p,", paste(names(methods), collapse = ","), "\n", sep = "")
 for (case in names(cases)) {
   p <- cases[[case]]
-  adjusted <- cbind(p, p.adjust(p, "bonferroni"), p.adjust(p, "holm"), p.adjust(p, "BH"))
+  adjusted <- do.call(cbind, c(list(p), lapply(methods, function(method) p.adjust(p, method))))
   for (i in seq_along(p)) cat(paste(c(case, sprintf("%.17g", adjusted[i, ])), collapse = ","), "\n", sep = "")
 }
