@@ -27,22 +27,35 @@ IMPLIED_BY_FWER: tuple[Criterion, ...] = (
 WHOLE = "whole"
 """The replay needs nothing but p (and what the spec says): no ingredient is taken as recorded."""
 
-Matching = Literal["bonferroni"] | None
-"""Which simultaneous interval matches the decisions; None where none is in general use."""
+Matching = Literal["bonferroni", "critical_value"] | None
+"""Which simultaneous interval matches the decisions; None where none is in general use.
+
+``bonferroni``: the interval of the test at the level shared out. ``critical_value``: the estimate and so many standard
+errors on either side, or on one; the entry's file has ``critical_values(level, **ingredients)``, which gives them for
+each member in the order of the ingredients, NaN where there is no result.
+"""
+
+Compares = Literal["anything", "groups", "control"]
+"""What the hypotheses of a family must be about: anything; pairs of groups of one column, the same outcome and the same
+rows in all; or such pairs that share one group, the control."""
 
 
 PER_MEMBER = {
     "weights": "the weight that the plan gives each hypothesis",
     "positions": "the place of each hypothesis in the written order, from 0",
-    "statistics": "the t statistic of each contrast",
-    "loadings": "for each contrast with a shared control, sqrt(n / (n + n of the control))",
-    "sizes": "the pair of group sizes behind each contrast",
+    "statistics": "the t statistic of each contrast, above 0 where it speaks for the side asked; 0 without a result",
+    "loadings": (
+        "for each contrast with a shared control, sqrt(n / (n + n of the control)); negative where the statistic is "
+        "control minus group, 0 where there is no result"
+    ),
+    "dfs": "the degrees of freedom of each statistic, 0 where there is no result",
 }
 PER_FAMILY = {
     "level": "the level of the promise that covers the family",
-    "df": "the degrees of freedom that all statistics of the family share",
+    "df": "the degrees of freedom that all statistics of the family share, 0 where none has a result",
     "groups": "the planned number of groups",
     "sides": "on how many sides the statistics are judged: 1 or 2",
+    "doubled": "whether the p of one side is doubled, because both sides share the level",
 }
 INGREDIENTS = PER_MEMBER | PER_FAMILY
 """What an entry may ask for beyond p, by these keyword-only parameters; its other keyword-only ones are options."""
@@ -227,6 +240,12 @@ class Procedure:
     """Further criteria that this control implies."""
     monotone: bool
     """Whether raising a p, or a further hypothesis with p = 1, never adds a rejection."""
+    tests: tuple[str, ...]
+    """The statistical tests whose statistics it can judge; empty where any p will do."""
+    compares: Compares
+    """What its hypotheses must be about."""
+    one_sided: bool
+    """Whether it can judge one side; otherwise every test must be two-sided, under a level that both sides share."""
     reference: str
     adjust: Callable[..., Steps] = field(repr=False)
 
@@ -279,6 +298,14 @@ class Procedure:
         adjusted: Vector = ordered.unsorted(self.steps(ordered, **given).adjusted)
         return adjusted
 
+    def critical_values(self, level: float, **given: Any) -> Vector:
+        """Give by how many standard errors each estimate has to differ from its null value, in the order of ``given``.
+
+        For procedures whose intervals are of the kind "critical_value".
+        """
+        values: Vector = PROCEDURES.module(self.name).critical_values(level, **given)
+        return values
+
     def replay(self, p: list[float], level: float, **given: Any) -> dict[str, list[Any]]:
         """Adjust again on plain lists, another way round: ``{"adjusted": [...], "rejected": [...]}``.
 
@@ -302,6 +329,9 @@ def procedure(
     no_intervals_because: str = "",
     implies: tuple[Criterion, ...] = (),
     monotone: bool = True,
+    tests: tuple[str, ...] = (),
+    compares: Compares = "anything",
+    one_sided: bool = True,
 ) -> Callable[[Callable[..., Steps]], Procedure]:
     """Enter a function on ascending p-values in the catalogue of procedures with what it declares."""
 
@@ -309,7 +339,7 @@ def procedure(
         return Procedure(
             title=title, controls=controls, strong=strong, valid_under=valid_under, intervals=intervals,
             no_intervals_because=no_intervals_because, replays=replays, implies=implies, monotone=monotone,
-            reference=reference, adjust=adjust,
+            tests=tests, compares=compares, one_sided=one_sided, reference=reference, adjust=adjust,
         )  # fmt: skip
 
     return enter
