@@ -5,7 +5,7 @@ from typing import Any
 from beforehand.multiplicity.contract import Procedure
 
 FROM_THE_PLAN = frozenset({"weights", "positions"})
-OPTIONS: dict[str, Any] = {"false_rejections": 2, "false_share": 0.1}
+OPTIONS: dict[str, Any] = {"false_rejections": 2, "false_share": 0.1, "truncation": 0.25}
 """A value for each option that has no default."""
 
 

@@ -107,8 +107,8 @@ def test_all_agree(tmp_path: Path) -> None:
         "counts;",
         "  from column p_entered alone: benjamini_hochberg, bonferroni, holm, serial.",
         "Taken as recorded: p, from which p_entered has to follow as the column entered_as says (of a two-sided test",
-        "  that enters with the side of its claim, that side's p); the families, their members and levels; the sides",
-        "  of the estimates; every other column.",
+        "  that enters with the side of its claim, that side's p); the families, their members and levels; what the",
+        "  plan gives them (weights, shares, a graph); the sides of the estimates; every other column.",
         "Rechecked 11 hypotheses: everything agrees.",
     ]
     assert done.returncode == 0
@@ -309,9 +309,10 @@ def test_the_text(procedures: tuple[str, ...]) -> None:
     tree = ast.parse(text, feature_version=(3, 8))
     imported = {alias.name for node in ast.walk(tree) if isinstance(node, ast.Import) for alias in node.names}
     imported |= {str(node.module) for node in ast.walk(tree) if isinstance(node, ast.ImportFrom)}
-    assert imported <= {"__future__", "csv", "hashlib", "io", "json", "sys", "pathlib", "typing"}
+    assert imported <= {"__future__", "csv", "fractions", "hashlib", "io", "json", "sys", "pathlib", "typing"}
     assert text == recheck_text(tuple(reversed(procedures)), tuple(SCHEMES))
-    assert [name for name in PROCEDURES if f"def replay_{name}(" in text] == sorted(procedures)
+    assert [name for name in PROCEDURES if f"def replay_{name}(" in text] == sorted(set(procedures) - set(SCHEMES))
+    assert [name for name in SCHEMES if f"def across_{name}(" in text] == sorted(SCHEMES)
     assert max(len(line) for line in text.splitlines()) <= 120
     assert text.isascii()
 

@@ -8,7 +8,15 @@ import threadpoolctl  # type: ignore[import-untyped]  # it ships no types
 from beforehand.analysis.agreement import P_FLOOR, Agreement, bound_near
 from beforehand.analysis.computed import Computed, compute
 from beforehand.analysis.drawn import drawn
-from beforehand.analysis.families import EnteredFamily, JudgedFamily, judge, order_of, scheme_of
+from beforehand.analysis.families import (
+    EnteredFamily,
+    JudgedFamily,
+    covered,
+    given_to_scheme,
+    judge,
+    order_of,
+    scheme_of,
+)
 from beforehand.analysis.records import (
     family_record,
     hypothesis_records,
@@ -69,6 +77,7 @@ def analyse(spec: Spec, dataset: Dataset, *, progress: Callable[[str], None] = l
         study=study_record(spec),
         promise=_study_promise(spec),
         scheme=scheme_of(spec),
+        scheme_given=given_to_scheme(spec, covered(spec, [one.entered for one in judged])) or None,
         order=tuple(order_of(spec)),
         inputs=inputs,
         rows=tuple(rows_record(one) for one in dataset.tables.values()),

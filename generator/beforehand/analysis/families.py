@@ -1,5 +1,6 @@
 """Families judged: each by its own procedure, all together by the scheme; and both a second time on plain lists."""
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import Any
 
@@ -8,8 +9,9 @@ from numpy.typing import NDArray
 
 from beforehand.analysis.agreement import Agreement, bound_near
 from beforehand.multiplicity.contract import PROCEDURES, Ordered, Procedure, Steps, Vector
-from beforehand.multiplicity.scheme import SCHEMES, FamilyDecision, FamilyResult
+from beforehand.multiplicity.scheme import SCHEMES, Falls, FamilyDecision, FamilyResult, Plain
 from beforehand.multiplicity.survival import largest_families
+from beforehand.spec.model import Exact
 from beforehand.spec.planned import PlannedFamily, Spec
 from beforehand.terms import AcrossFamilies, State
 
@@ -34,6 +36,11 @@ class EnteredFamily:
     def procedure(self) -> Procedure:
         """The family's procedure."""
         return PROCEDURES[self.family.procedure]
+
+    @property
+    def adjusted_by_scheme(self) -> bool:
+        """Whether the family has no adjusted p of its own: the scheme of the procedure's name adjusts its members."""
+        return self.procedure.name in SCHEMES
 
     @property
     def level(self) -> float:
@@ -65,6 +72,7 @@ class JudgedFamily:
     entered: EnteredFamily
     decision: FamilyDecision
     rank: NDArray[np.int64]
+    """Its rank by p; its step, where a graph adjusts it."""
     factor: Vector
     product: Vector
     from_rank: NDArray[np.int64]
@@ -82,16 +90,16 @@ def scheme_of(spec: Spec) -> AcrossFamilies:
 
 def judge(spec: Spec, entered: tuple[EnteredFamily, ...], agreement: Agreement) -> tuple[JudgedFamily, ...]:
     """Judge every family, in the order of the spec."""
-    results = {e.family.id: _result(e) for e in entered}
-    together = order_of(spec)
+    together = covered(spec, entered)
+    apart = [one for one in entered if one.family.stands_apart]
     decisions: dict[str, FamilyDecision] = {}
-    by_id = {e.family.id: e for e in entered}
-    groups = [(scheme_of(spec), together), ("separate", [e.family.id for e in entered if e.family.id not in together])]
-    for scheme, ids in groups:
-        decided = SCHEMES[scheme]([results[i] for i in ids])
+    for scheme, group in ((scheme_of(spec), together), ("separate", apart)):
+        given = given_to_scheme(spec, group) if group is together else {}
+        results = [result_of(one) for one in group]
+        decided = SCHEMES[scheme](results, **given)
         decisions |= {decision.id: decision for decision in decided}
-        _judge_again([by_id[i] for i in ids], decided, results, scheme, agreement)
-    return tuple(_judged(e, decisions[e.family.id]) for e in entered)
+        _judge_again(group, results, decided, agreement, scheme=scheme, given=given)
+    return tuple(_judged(one, decisions[one.family.id]) for one in entered)
 
 
 def order_of(spec: Spec) -> list[str]:
@@ -100,19 +108,53 @@ def order_of(spec: Spec) -> list[str]:
     return [name for name in spec.document.promise.order or covered if name in covered]
 
 
-def _result(entered: EnteredFamily) -> FamilyResult:
+def covered(spec: Spec, entered: Sequence[EnteredFamily]) -> list[EnteredFamily]:
+    """Give the families that the study's promise covers, in the order in which they are tested."""
+    by_id = {one.family.id: one for one in entered}
+    return [by_id[name] for name in order_of(spec)]
+
+
+def given_to_scheme(spec: Spec, entered: Sequence[EnteredFamily]) -> dict[str, Any]:
+    """Give what the plan says of the scheme across the families that it covers, in their order, as values of JSON."""
+    scheme, graph = scheme_of(spec), spec.document.graph
+    if scheme == "shares":
+        shares = {family.id: family.share for family in spec.document.families}
+        return {"shares": {name: share.canonical() for name, share in shares.items() if share is not None}}
+    if scheme == "parallel":
+        options = {one.family.id: (one.family.procedure_options, one.given) for one in entered[:-1]}
+        return {
+            "truncations": {name: float(option.get("truncation", 0)) for name, (option, _) in options.items()},
+            "weights": {name: list(given["weights"]) for name, (_, given) in options.items() if "weights" in given},
+        }
+    if graph is not None:
+        passes = [(one.from_, one.to, one.share) for one in graph.pass_]
+        return {
+            "nodes_are": graph.nodes_are,
+            "start": {node: share.canonical() for node, share in graph.start.items()},
+            "passes": [[a, b, x.canonical() if isinstance(x, Exact) else x] for a, b, x in passes],
+        }
+    return {}
+
+
+def result_of(entered: EnteredFamily) -> FamilyResult:
+    """Give one family as its procedure leaves it to the scheme."""
+    p_family = entered.p if entered.adjusted_by_scheme else entered.procedure(entered.p, **entered.given)
     return FamilyResult(
         id=entered.family.id,
-        p_family=entered.procedure(entered.p, **entered.given),
+        p_family=p_family,
         has_result=entered.has_result,
         against_claim=entered.against_claim,
         level=entered.level,
+        members=tuple(member.id for member in entered.family.members),
     )
 
 
 def _judged(entered: EnteredFamily, decision: FamilyDecision) -> JudgedFamily:
+    if decision.falls is not None:
+        return _fallen(entered, decision, decision.falls)
     ordered = Ordered.of(entered.p)
     steps: Steps = entered.procedure.steps(ordered, **entered.given)
+    options = dict(entered.family.procedure_options)
     return JudgedFamily(
         entered=entered,
         decision=decision,
@@ -120,52 +162,78 @@ def _judged(entered: EnteredFamily, decision: FamilyDecision) -> JudgedFamily:
         factor=ordered.unsorted(steps.factor),
         product=ordered.unsorted(steps.product),
         from_rank=ordered.unsorted(steps.taken_from + 1),
-        thresholds=ordered.unsorted(entered.level / steps.factor),
-        arithmetic=tuple(ordered.unsorted(np.array(steps.arithmetic or [""] * entered.p.size, dtype=object))),
+        thresholds=ordered.unsorted(steps.thresholds(decision.local_level)),
+        arithmetic=tuple(ordered.unsorted(np.array(list(steps.arithmetic) or [""] * entered.p.size, dtype=object))),
         survives_up_to=np.where(
             [state in REJECTED for state in decision.states],
-            largest_families(entered.procedure, ordered, level=entered.level),
+            largest_families(entered.procedure, ordered, level=decision.local_level, **options),
             0,
         ),
     )
 
 
+def _fallen(entered: EnteredFamily, decision: FamilyDecision, falls: Falls) -> JudgedFamily:
+    """Take the arithmetic from the walk of the graph, in which further hypotheses would have no place."""
+    return JudgedFamily(
+        entered=entered,
+        decision=decision,
+        rank=falls.step,
+        factor=falls.factor,
+        product=falls.product,
+        from_rank=falls.from_step,
+        thresholds=np.full(entered.p.size, np.nan),
+        arithmetic=tuple("" if step else "no share of the level reaches it" for step in falls.step),
+        survives_up_to=np.zeros(entered.p.size, dtype=np.int64),
+    )
+
+
 def _judge_again(
     entered: list[EnteredFamily],
+    results: list[FamilyResult],
     decided: tuple[FamilyDecision, ...],
-    results: dict[str, FamilyResult],
-    scheme: str,
     agreement: Agreement,
+    *,
+    scheme: str,
+    given: dict[str, Any],
 ) -> None:
     """Adjust and decide again from the second computation's p, and compare everything."""
-    replays = [e.procedure.replay(list(e.second_p), e.level, **e.replayed_with) for e in entered]
-    may_open = [[bool(x) for x in results[e.family.id].may_open] for e in entered]
-    again = SCHEMES[scheme].replay(
-        [e.family.id for e in entered],
-        [replay["adjusted"] for replay in replays],
-        may_open,
-        [replay["rejected"] for replay in replays],
-    )
-    for e, decision, replay, second in zip(entered, decided, replays, again, strict=True):
-        first = results[e.family.id]
-        _compare(agreement, e, "adjusted p within the family", first.p_family, replay["adjusted"])
+    again = SCHEMES[scheme].replay([_plain(*pair) for pair in zip(entered, results, strict=True)], **given)
+    for e, first, second in zip(entered, decided, again, strict=True):
+        local = e.level if second["local_level"] is None else second["local_level"]
+        if not e.adjusted_by_scheme:
+            _compare(agreement, e, "adjusted p within the family", first.p_family, second["p_family"], near=local)
         if scheme != "separate":
-            _compare(agreement, e, "adjusted p across families", decision.p_study, second["p_study"])
+            _compare(agreement, e, "adjusted p across families", first.p_study, second["p_study"], near=e.level)
+        agreement.same(e.family.id, "gate", first.closed_by, second["closed_by"])
         for index, member in enumerate(e.family.members):
-            state = _state_again(e, index, closed=bool(second["closed_by"]), rejected=replay["rejected"][index])
-            agreement.same(member.id, "decision", decision.states[index], state)
+            state = _state_again(e, index, tested=second["tested"][index], rejected=second["rejected"][index])
+            agreement.same(member.id, "decision", first.states[index], state)
 
 
-def _compare(agreement: Agreement, e: EnteredFamily, quantity: str, first: Vector, second: list[Any]) -> None:
+def _plain(entered: EnteredFamily, result: FamilyResult) -> Plain:
+    p = list(entered.second_p)
+    return {
+        "id": entered.family.id,
+        "members": list(result.members),
+        "level": entered.level,
+        "p": p,
+        "may_open": result.may_open.tolist(),
+        "judge": lambda level: entered.procedure.replay(p, level, **entered.replayed_with),
+    }
+
+
+def _compare(
+    agreement: Agreement, e: EnteredFamily, quantity: str, first: Vector, second: list[Any], *, near: float
+) -> None:
     for member, x, y in zip(e.family.members, first, second, strict=True):
-        bound = bound_near(e.level, float(x), bound=ADJUSTED_BOUND)
+        bound = bound_near(near, float(x), bound=ADJUSTED_BOUND)
         agreement.numbers(member.id, quantity, float(x), float(y), bound=bound)
 
 
-def _state_again(e: EnteredFamily, index: int, *, closed: bool, rejected: bool) -> State:
+def _state_again(e: EnteredFamily, index: int, *, tested: bool, rejected: bool) -> State:
     if not e.has_result[index]:
         return "no_result"
-    if closed:
+    if not tested:
         return "not_tested"
     if not rejected:
         return "not_rejected"

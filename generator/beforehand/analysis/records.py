@@ -126,6 +126,7 @@ def family_record(judged: JudgedFamily) -> FamilyRecord:
     states: dict[State, int] = {}
     for state in decision.states:
         states[state] = states.get(state, 0) + 1
+    local, level = decision.local_level, judged.entered.level
     return FamilyRecord(
         id=family.id,
         question=family.question,
@@ -137,7 +138,8 @@ def family_record(judged: JudgedFamily) -> FamilyRecord:
         procedure_options=dict(family.procedure_options),
         given=judged.entered.replayed_with,
         multiples=bool(np.isfinite(judged.factor).all()),
-        level=judged.entered.level,
+        level=level,
+        local_level=None if math.isnan(local) or local == level else local,
         strong=procedure.strong,
         valid_under=procedure.valid_under,
         no_intervals_because=procedure.no_intervals_because,
@@ -156,14 +158,22 @@ def hypothesis_records(
     """Put the members of a family into words."""
     family = judged.entered.family
     names = labels(family.members, [one.test for one in computed])
+    falls = judged.decision.falls
+    waits_for = falls.waits_for if falls else [()] * len(computed)
     return tuple(
-        _hypothesis(spec, family, one, label=label, arithmetic=arithmetic)
-        for one, label, arithmetic in zip(computed, names, judged.arithmetic, strict=True)
+        _hypothesis(spec, family, one, label=label, arithmetic=arithmetic, waits_for=waiting or None)
+        for one, label, arithmetic, waiting in zip(computed, names, judged.arithmetic, waits_for, strict=True)
     )
 
 
 def _hypothesis(
-    spec: Spec, family: PlannedFamily, computed: Computed, *, label: str, arithmetic: str
+    spec: Spec,
+    family: PlannedFamily,
+    computed: Computed,
+    *,
+    label: str,
+    arithmetic: str,
+    waits_for: tuple[str, ...] | None,
 ) -> HypothesisRecord:
     hypothesis, test, result = computed.hypothesis, computed.test, computed.result
     unit = unit_of(spec, hypothesis, test)
@@ -202,6 +212,7 @@ def _hypothesis(
         summaries=_summaries(computed),
         undecided=computed.samples.undecided,
         arithmetic=arithmetic,
+        waits_for=waits_for,
         remarks=result.remarks if isinstance(result, Outcome) else (),
         no_result_because=result.reason if isinstance(result, NotComputed) else "",
         origin=(family.from_data.origin or "") if family.from_data else "",

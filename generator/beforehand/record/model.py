@@ -65,7 +65,7 @@ class Results:
     """How ``p_entered`` follows from p: "as it is", "doubled" (one side, against a level shared by both), "claim side"
     (the p of the claim's side of a two-sided test) or "no result"."""
     rank: Integers
-    """Rank of ``p_entered`` within its family, counted from 1."""
+    """Rank of ``p_entered`` within its family, counted from 1; the step of the walk where a graph adjusts it."""
     factor: Floats
     """By how much the procedure multiplied it."""
     product: Floats
@@ -240,6 +240,9 @@ class FamilyRecord:
     """The family whose gate stayed closed; "" where the family was tested."""
     states: dict[State, int]
     """How many members are in each state; only states that occur."""
+    local_level: float | None = None
+    """The level at which the family's procedure was run: 0 behind a closed gate; None where it is that of the promise,
+    or where each member has its own."""
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -311,6 +314,8 @@ class HypothesisRecord:
     origin: str = ""
     """Who computed a supplied result, with what."""
     margin_basis: str = ""
+    waits_for: tuple[str, ...] | None = None
+    """The nodes of a graph that would have to pass their share of the level on before the hypothesis is tested."""
     estimand: dict[str, str] = field(default_factory=dict)
     purpose: str = ""
     reason: str = ""
@@ -374,6 +379,8 @@ class Record:
     promise: PromiseRecord | None
     """The study-wide promise; None where each family keeps its own."""
     scheme: AcrossFamilies
+    scheme_given: dict[str, Any] | None = None
+    """What the plan says of the scheme: shares, truncations and weights, or a graph; None where it says nothing."""
     order: tuple[str, ...] = ()
     """The families that the study's promise covers, in the order in which they were tested."""
     inputs: tuple[InputRecord, ...]

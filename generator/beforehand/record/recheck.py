@@ -15,18 +15,18 @@ def recheck_text(procedures: tuple[str, ...], schemes: tuple[str, ...]) -> str:
 
     A name that no catalogue holds is left out: the script says of such a family that it is not recomputed.
     """
-    used = sorted(set(procedures) & set(PROCEDURES))
+    # A family whose procedure has the scheme's name is adjusted by the scheme.
+    used = sorted((set(procedures) - set(schemes)) & set(PROCEDURES))
     # Families with a promise of their own stand beside any scheme.
     across = sorted({*schemes, "separate"} & set(SCHEMES))
-    parts = [_replay(PROCEDURES.module(name), name, "PROCEDURES") for name in used]
-    parts += [_replay(SCHEMES.module(name), name, "SCHEMES") for name in across]
+    parts = [_replay(PROCEDURES.module(name), f"replay_{name}", f'PROCEDURES["{name}"]') for name in used]
+    parts += [_replay(SCHEMES.module(name), f"across_{name}", f'SCHEMES["{name}"]') for name in across]
     replays = {name: PROCEDURES[name].replays for name in used} | {name: SCHEMES[name].replays for name in across}
     parts += [f'TAKEN["{name}"] = "{what}"\n' for name, what in replays.items() if what != WHOLE]
     before, after = inspect.getsource(recheck_head).split(PLACE)
     return "\n\n".join([before + PLACE, *parts]) + after
 
 
-def _replay(module: Any, name: str, catalogue: str) -> str:
-    text = inspect.getsource(module.replay)
-    own_name = text.replace("def replay(", f"def replay_{name}(", 1)
-    return f'{own_name}\n\n{catalogue}["{name}"] = replay_{name}\n'
+def _replay(module: Any, own_name: str, place: str) -> str:
+    text = inspect.getsource(module.replay).replace("def replay(", f"def {own_name}(", 1)
+    return f"{text}\n\n{place} = {own_name}\n"

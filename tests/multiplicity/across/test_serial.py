@@ -86,11 +86,6 @@ def test_p_study_is_the_smallest_level_at_which_the_scheme_rejects(seed: int) ->
                 assert again.states[i].startswith(expected)
 
 
-def test_families_of_one_promise_share_its_level() -> None:
-    with pytest.raises(ValueError, match="several levels"):
-        serial([family("energy", 0.01), replace(family("frost", 0.01), level=0.025)])
-
-
 def test_the_gate_uses_the_one_comparison() -> None:
     just = LEVEL * (1 + 5e-13)
     assert is_rejected(just, LEVEL)

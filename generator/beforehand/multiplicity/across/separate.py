@@ -1,5 +1,7 @@
 """Separate promises: each family stands on its own."""
 
+from typing import Any
+
 import numpy as np
 
 from beforehand.multiplicity.contract import WHOLE
@@ -31,12 +33,19 @@ def separate(families: Families) -> Decisions:
     Assumes nothing about the families together: k families at level a can err somewhere with probability up to k a.
     """
     return tuple(
-        decide(family, decides="p_family", p_study=np.full_like(family.p_family, np.nan)) for family in families
+        decide(family, decides="p_family", p_study=np.full_like(family.p_family, np.nan), local_level=family.level)
+        for family in families
     )
 
 
-def replay(
-    ids: list[str], p_family: list[list[float]], may_open: list[list[bool]], rejected: list[list[bool]]
-) -> list[dict[str, object]]:
-    """Every family is tested; there is no study level, and so no p_study."""
-    return [{"closed_by": "", "p_study": [None] * len(p_family[k])} for k in range(len(ids))]
+def replay(families: list[dict[str, Any]]) -> list[dict[str, Any]]:
+    """Every family is tested at its own level; there is no study level, and so no p_study."""
+    again: list[dict[str, Any]] = []
+    for family in families:
+        judged = family["judge"](family["level"])
+        none = [None] * len(judged["adjusted"])
+        again.append({
+            "closed_by": "", "local_level": family["level"], "p_family": judged["adjusted"], "p_study": none,
+            "tested": [True] * len(none), "rejected": judged["rejected"],
+        })  # fmt: skip
+    return again

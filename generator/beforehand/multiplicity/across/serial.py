@@ -1,10 +1,12 @@
 """Serial gates: each family waits until everything before it is rejected."""
 
+from typing import Any
+
 import numpy as np
 
 from beforehand.multiplicity.contract import WHOLE
 from beforehand.multiplicity.decision import is_rejected
-from beforehand.multiplicity.scheme import Decisions, Families, decide, scheme
+from beforehand.multiplicity.scheme import Decisions, Families, decide, one_level, scheme
 
 
 @scheme(
@@ -41,31 +43,33 @@ def serial(families: Families) -> Decisions:
     Any error in a later family implies one in each family before it that holds a true null, so the first such
     family's own error rate bounds the study's (Westfall & Krishen 2001).
     """
-    if len({family.level for family in families}) > 1:
-        raise ValueError("serial families are all tested at the full study level; found several levels")
+    level = one_level(families)
     decisions = []
     gate, closed_by = 0.0, ""
     for family in families:
         p_study = np.maximum(family.p_family, gate)
-        decisions.append(decide(family, decides="p_study", p_study=p_study, closed_by=closed_by))
+        decisions.append(decide(family, decides="p_study", p_study=p_study, local_level=level, closed_by=closed_by))
         gate = max(gate, family.opens_at)
-        if not closed_by and not is_rejected(gate, family.level):
+        if not closed_by and not is_rejected(gate, level):
             closed_by = family.id
     return tuple(decisions)
 
 
-def replay(
-    ids: list[str], p_family: list[list[float]], may_open: list[list[bool]], rejected: list[list[bool]]
-) -> list[dict[str, object]]:
+def replay(families: list[dict[str, Any]]) -> list[dict[str, Any]]:
     """Walk the gates by the decisions of each family's own procedure; p_study is the largest p on the way."""
     closed_by = ""
     on_the_way = [0.0]
-    again: list[dict[str, object]] = []
-    for k, family in enumerate(ids):
-        again.append({"closed_by": closed_by, "p_study": [max([p, *on_the_way]) for p in p_family[k]]})
-        members = range(len(p_family[k]))
-        on_the_way.append(max([p_family[k][i] if may_open[k][i] else 1.0 for i in members], default=1.0))
-        opened = [rejected[k][i] and may_open[k][i] for i in members]
+    again: list[dict[str, Any]] = []
+    for family in families:
+        judged, may_open = family["judge"](family["level"]), family["may_open"]
+        p, rejected = judged["adjusted"], judged["rejected"]
+        again.append({
+            "closed_by": closed_by, "local_level": family["level"], "p_family": p,
+            "p_study": [max([value, *on_the_way]) for value in p],
+            "tested": [not closed_by] * len(p), "rejected": rejected,
+        })  # fmt: skip
+        on_the_way.append(max([p[i] if may_open[i] else 1.0 for i in range(len(p))], default=1.0))
+        opened = [rejected[i] and may_open[i] for i in range(len(p))]
         if not closed_by and (not opened or not all(opened)):
-            closed_by = family
+            closed_by = family["id"]
     return again
