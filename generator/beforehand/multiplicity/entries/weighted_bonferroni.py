@@ -59,7 +59,11 @@ def weighted_bonferroni(p: Ascending, *, weights: Vector) -> Steps:
     )
 
 
-def replay(p: list[float], level: float, weights: list[float]) -> dict[str, list[float] | list[bool]]:
+def replay(
+    p: list[float],
+    level: float,
+    weights: list[float],
+) -> dict[str, list[float] | list[bool]]:
     """Weighted Bonferroni by shares of the level: p meets level x weight / (sum of the weights)."""
     whole = sum(weights)
     adjusted, rejected = [], []

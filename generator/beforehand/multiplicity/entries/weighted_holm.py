@@ -79,7 +79,11 @@ def weighted_holm(p: Ascending, *, weights: Vector) -> Steps:
     )
 
 
-def replay(p: list[float], level: float, weights: list[float]) -> dict[str, list[float] | list[bool]]:
+def replay(
+    p: list[float],
+    level: float,
+    weights: list[float],
+) -> dict[str, list[float] | list[bool]]:
     """Weighted Holm by definition: the largest r x (sum of the weights not below r) over all r = p / weight up to its.
 
     Decisions walk down: each hypothesis in the order of p / weight has to meet level x weight / (sum of those left).
