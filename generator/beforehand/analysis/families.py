@@ -198,10 +198,10 @@ def _judge_again(
 ) -> None:
     """Adjust and decide again from the second computation's p, and compare everything."""
     again = SCHEMES[scheme].replay([_plain(*pair) for pair in zip(entered, results, strict=True)], **given)
-    for e, first, second in zip(entered, decided, again, strict=True):
+    for e, result, first, second in zip(entered, results, decided, again, strict=True):
         local = e.level if second["local_level"] is None else second["local_level"]
         if not e.adjusted_by_scheme:
-            _compare(agreement, e, "adjusted p within the family", first.p_family, second["p_family"], near=local)
+            _compare(agreement, e, "adjusted p within the family", result.p_family, second["p_family"], near=local)
         if scheme != "separate":
             _compare(agreement, e, "adjusted p across families", first.p_study, second["p_study"], near=e.level)
         agreement.same(e.family.id, "gate", first.closed_by, second["closed_by"])

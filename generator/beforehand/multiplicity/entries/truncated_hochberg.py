@@ -1,5 +1,7 @@
 """Hochberg's step-up procedure, truncated: between Bonferroni and Hochberg, so that a rejection can pass on a part."""
 
+from typing import Any
+
 import numpy as np
 
 from beforehand.multiplicity.contract import FWER, IMPLIED_BY_FWER, WHOLE, Ascending, Steps, procedure, running_minimum
@@ -49,7 +51,7 @@ def truncated_hochberg(p: Ascending, *, truncation: float) -> Steps:
     return running_minimum(p, factor=1 / (truncation / left + (1 - truncation) / max(p.size, 1)))
 
 
-def replay(p: list[float], level: float, truncation: float) -> dict[str, list[float] | list[bool]]:
+def replay(p: list[float], level: float, truncation: float) -> dict[str, list[Any]]:
     """Adjust by definition: the smallest q / (share of the level at the last rank of q), over all q from p on.
 
     Decisions walk down from the largest p: the first that meets its threshold is rejected with all that are smaller.

@@ -1,5 +1,7 @@
 """Holm's step-down procedure, truncated: between Bonferroni and Holm, so that a rejection can pass on a part."""
 
+from typing import Any
+
 import numpy as np
 
 from beforehand.multiplicity.contract import FWER, IMPLIED_BY_FWER, WHOLE, Ascending, Steps, procedure, running_maximum
@@ -49,7 +51,7 @@ def truncated_holm(p: Ascending, *, truncation: float) -> Steps:
     return running_maximum(p, factor=1 / (truncation / left + (1 - truncation) / max(p.size, 1)))
 
 
-def replay(p: list[float], level: float, truncation: float) -> dict[str, list[float] | list[bool]]:
+def replay(p: list[float], level: float, truncation: float) -> dict[str, list[Any]]:
     """Adjust by definition: the largest q / (share of the level for all values from q on), over all q up to p.
 
     Decisions walk down the staircase: each p in ascending order has to meet the share of those not yet rejected.
