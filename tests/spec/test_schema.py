@@ -24,7 +24,7 @@ def test_the_schema_names_the_tests_and_refuses_unknown_keys() -> None:
     assert schema["additionalProperties"] is False
     hypothesis = schema["$defs"]["WrittenHypothesis"]
     assert "welch_t" in hypothesis["properties"]["test"]["enum"]
-    assert hypothesis["properties"]["strata"]["description"].endswith("Not available yet.")
+    assert hypothesis["properties"]["cluster"]["description"].endswith("Not available yet.")
     assert "holm" in schema["$defs"]["Family"]["properties"]["procedure"]["enum"]
 
 

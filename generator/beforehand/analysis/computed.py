@@ -89,7 +89,7 @@ class _Asked:
             null=self.null,
             alternative=alternative or self.hypothesis.side,
             confidence=confidence,
-            options=dict(self.hypothesis.options),
+            options={**self.hypothesis.options, **self.samples.beside},
         )
         return judged
 

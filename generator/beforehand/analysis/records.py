@@ -1,13 +1,22 @@
 """From what was read and computed to the parts of the record."""
 
 import math
+from dataclasses import replace
 from typing import Any
 
 import numpy as np
 
 from beforehand.analysis.computed import Computed
 from beforehand.analysis.families import JudgedFamily
-from beforehand.analysis.wording import alternative_in_words, labels, null_in_words, outcome_name, sides, unit_of
+from beforehand.analysis.wording import (
+    alternative_in_words,
+    beside_in_words,
+    labels,
+    null_in_words,
+    outcome_name,
+    sides,
+    unit_of,
+)
 from beforehand.data.dataset import Dataset
 from beforehand.data.sets import missing_values, overlaps
 from beforehand.data.table import Table
@@ -224,6 +233,7 @@ def _hypothesis(
 
 
 def _estimand(computed: Computed) -> dict[str, str]:
+        beside=beside_in_words(hypothesis),
     estimand = computed.hypothesis.estimand
     if estimand is None:
         return {}
@@ -240,14 +250,18 @@ def _summaries(computed: Computed) -> tuple[GroupSummary, ...]:
     names = sides(computed.hypothesis) or ("all",)
     # a pair that lacks one of its values is missing on both sides
     gone = samples.missing if len(samples.missing) == len(samples.arrays) else samples.missing * len(samples.arrays)
-    return tuple(
-        _summary(name, values, missing, events=test.outcome == "event")
+    found = tuple(
+        _summary(name, values, missing, events=test.outcome in ("event", "count"))
         for name, values, missing in zip(names, samples.arrays, gone, strict=True)
     )
 
 
 def _summary(name: str, values: Any, missing: int, *, events: bool) -> GroupSummary:
     n = len(values)
+    amounts = samples.beside.get("exposure") or samples.beside.get("time")
+    if not amounts:
+        return found
+    return tuple(replace(one, exposure=float(amount.sum())) for one, amount in zip(found, amounts, strict=True))
     if events:
         return GroupSummary(group=name, n=n, missing=missing, events=int(values.sum()))
     if not n:
@@ -308,7 +322,7 @@ def results(judged: tuple[JudgedFamily, ...], computed: dict[str, Computed]) -> 
 def _row(judged: JudgedFamily, index: int, computed: Computed) -> dict[str, Any]:
     outcome = computed.result if isinstance(computed.result, Outcome) else None
     decision, n = judged.decision, computed.result.n
-    pairs = computed.test.design == "pairs"
+    aligned = computed.test.aligned
     number = dict.fromkeys(("estimate", "lower", "upper", "statistic", "df", "p", "standard_error"), MISSING_NUMBER)
     if outcome:
         number = {name: float(getattr(outcome, name)) for name in number}
@@ -332,7 +346,7 @@ def _row(judged: JudgedFamily, index: int, computed: Computed) -> dict[str, Any]
         "product": float(judged.product[index]),
         "from_rank": int(judged.from_rank[index]),
         "n_first": n[0] if n else 0,
-        "n_second": n[1] if len(n) > 1 and not pairs else 0,
+        "n_second": n[1] if len(n) > 1 and not aligned else 0,
         "interval_level": computed.confidence if outcome else MISSING_NUMBER,
         "matching_lower": matching.lower if matching else MISSING_NUMBER,
         "matching_upper": matching.upper if matching else MISSING_NUMBER,

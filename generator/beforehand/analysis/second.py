@@ -12,10 +12,11 @@ from typing import Any
 import numpy as np
 
 from beforehand.analysis.computed import EQUAL_SIDES
+from beforehand.analysis.second_beside import complete_rows, taken_beside
 from beforehand.data.evaluate import evaluated
 from beforehand.data.table import Table
 from beforehand.hypothesis_tests.contract import NotComputed, Outcome, Result, StatisticalTest
-from beforehand.spec.model import EventOutcome, HypothesesFrom, Hypothesis, PairOutcome
+from beforehand.spec.model import Event, EventOutcome, HypothesesFrom, Hypothesis, PairOutcome
 from beforehand.spec.planned import PlannedFamily
 
 Ask = Callable[[float, str], Result]
@@ -70,8 +71,8 @@ def compute_again(
     family: PlannedFamily, hypothesis: Hypothesis, test: StatisticalTest[...], table: PlainTable, confidence: float
 ) -> SecondResult:
     """Compute one hypothesis again."""
-    samples = _samples(family, hypothesis, table)
-    ask = _asking(test, samples, dict(hypothesis.options), confidence)
+    taken = _take(family, hypothesis, table)
+    ask = _asking(test, taken.arrays, {**hypothesis.options, **taken.beside}, confidence)
     null, one_sided = hypothesis.null_hypothesis, {"at_most": "above", "at_least": "below"}
     side = one_sided.get(null.form) or hypothesis.alternative or "two_sided"
     result = ask(null.margins[0], side)
@@ -92,27 +93,43 @@ def compute_again(
     )
 
 
-def _samples(family: PlannedFamily, hypothesis: Hypothesis, table: PlainTable) -> tuple[Any, ...]:
+@dataclass(frozen=True)
+class _Taken:
+    """The samples of a hypothesis, and what its test takes beside them."""
+
+    arrays: tuple[Any, ...]
+    beside: dict[str, Any] = field(default_factory=dict)
+
+
+def _take(family: PlannedFamily, hypothesis: Hypothesis, table: PlainTable) -> _Taken:
     outcome, groups, rows = hypothesis.outcome, hypothesis.groups, table.rows(hypothesis)
     if family.from_data:
-        return _supplied(family.from_data, hypothesis, table, rows)
+        return _Taken(_supplied(family.from_data, hypothesis, table, rows))
     if isinstance(outcome, PairOutcome):
         one, other = table.column(outcome.first), table.column(outcome.second)
-        return _aligned([(one[row], other[row]) for row in rows])
-    values = _outcome(outcome, table)
-    if groups is None:
-        return (_array([values[row] for row in rows]),)
-    group = table.column(groups.column)
+        return _Taken(_aligned([(one[row], other[row]) for row in rows]))
+    values = _outcome(hypothesis.time.event if hypothesis.time else outcome, table)
+    if groups is not None and hypothesis.matched_by:
+        return _Taken(_aligned(_pairs(hypothesis, table, rows, values)))
+    rows = complete_rows(hypothesis, values, table.column, rows)
+    group = table.column(groups.column) if groups else []
+    levels = (groups.first, groups.second) if groups else ()
+    sides = [[row for row in rows if group[row] == level] for level in levels] or [rows]
+    samples = tuple(_array([values[row] for row in side]) for side in sides)
+    return _Taken(samples, taken_beside(hypothesis, table.column, sides))
+
+
+def _pairs(hypothesis: Hypothesis, table: PlainTable, rows: list[int], values: list[Any]) -> list[tuple[Any, Any]]:
+    groups = hypothesis.groups
+    assert groups is not None
+    group, key = table.column(groups.column), table.column(str(hypothesis.matched_by))
     first, second = ([row for row in rows if group[row] == level] for level in (groups.first, groups.second))
-    if hypothesis.matched_by:
-        key = table.column(hypothesis.matched_by)
-        partner = {key[row]: values[row] for row in second}
-        return _aligned([(values[row], partner[key[row]]) for row in sorted(first, key=key.__getitem__)])
-    return _array([values[row] for row in first]), _array([values[row] for row in second])
+    partner = {key[row]: values[row] for row in second}
+    return [(values[row], partner[key[row]]) for row in sorted(first, key=key.__getitem__)]
 
 
-def _outcome(outcome: str | EventOutcome | None, table: PlainTable) -> list[Any]:
-    if isinstance(outcome, EventOutcome):
+def _outcome(outcome: str | EventOutcome | Event | None, table: PlainTable) -> list[Any]:
+    if isinstance(outcome, EventOutcome | Event):
         return [None if status is None else status in outcome.values for status in table.column(outcome.column)]
     return table.column(str(outcome))
 

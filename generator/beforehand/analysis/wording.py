@@ -4,16 +4,25 @@ from collections.abc import Sequence
 
 from beforehand.hypothesis_tests.contract import StatisticalTest
 from beforehand.spec.load import Spec
-from beforehand.spec.model import EventOutcome, Hypothesis, PairOutcome
+from beforehand.spec.model import DataSet, EventOutcome, Hypothesis, PairOutcome
 from beforehand.spelling import MINUS, short, with_unit
 from beforehand.terms import Alternative
 
-ABOUT = {"ratio": ("over", " / "), "difference": ("minus", f" {MINUS} "), "location": ("minus", f" {MINUS} ")}
+ABOUT = {
+    "ratio": ("over", " / "),
+    "difference": ("minus", f" {MINUS} "),
+    "location": ("minus", f" {MINUS} "),
+    "correlation": ("and", " and "),
+}
 
 
 def outcome_name(hypothesis: Hypothesis) -> str:
-    """Name the outcome: "energy", "frost = yes", "wear_new and wear_old"."""
-    outcome = hypothesis.outcome
+    """Name the outcome: "energy", "frost = yes", "alarms per openings", "wear and age", "days until state = failed"."""
+    outcome, time = hypothesis.outcome, hypothesis.time
+    if time:
+        return f"{time.column} until {time.event.column} = {' or '.join(time.event.values)}"
+    if hypothesis.exposure:
+        return f"{outcome} per {hypothesis.exposure}"
     if isinstance(outcome, EventOutcome):
         return f"{outcome.column} = {' or '.join(outcome.values)}"
     if isinstance(outcome, PairOutcome):
@@ -31,7 +40,7 @@ def sides(hypothesis: Hypothesis) -> tuple[str, ...]:
 
 
 def unit_of(spec: Spec, hypothesis: Hypothesis, test: StatisticalTest[...]) -> str:
-    """Give the unit of the estimate: that of the outcome, and none for a ratio."""
+    """Give the unit of the estimate: that of the outcome, "per day" for a rate, and none for a ratio."""
     if test.scale not in ("difference", "location"):
         return ""
     outcome = hypothesis.outcome
@@ -39,6 +48,13 @@ def unit_of(spec: Spec, hypothesis: Hypothesis, test: StatisticalTest[...]) -> s
     if not isinstance(name, str):
         return ""
     data = spec.data_set(hypothesis.data)
+    unit = _unit(data, name)
+    if hypothesis.exposure:
+        unit = f"{unit} per {_unit(data, hypothesis.exposure) or hypothesis.exposure}"
+    return unit.strip()
+
+
+def _unit(data: DataSet, name: str) -> str:
     declared = data.columns.get(name) or data.derive.get(name)
     return (declared.unit if declared else None) or ""
 
@@ -46,16 +62,18 @@ def unit_of(spec: Spec, hypothesis: Hypothesis, test: StatisticalTest[...]) -> s
 def labels(members: Sequence[Hypothesis], tests: Sequence[StatisticalTest[...]]) -> list[str]:
     """Give each member of a family a short name of its own: only what tells the members apart."""
     outcomes = [outcome_name(member) for member in members]
-    pairs = [
-        ABOUT.get(test.scale, ABOUT["difference"])[1].join(sides(member))
-        for member, test in zip(members, tests, strict=True)
-    ]
+    pairs = [_pair(member, test) for member, test in zip(members, tests, strict=True)]
     same_pair, same_outcome = len(set(pairs)) == 1, len(set(outcomes)) == 1
     made = [
         _label(outcome, pair, same_outcome=same_outcome, same_pair=same_pair)
         for outcome, pair in zip(outcomes, pairs, strict=True)
     ]
     return [label if made.count(label) == 1 else member.id for label, member in zip(made, members, strict=True)]
+
+
+def _pair(hypothesis: Hypothesis, test: StatisticalTest[...]) -> str:
+    """Write what is compared; in an association this is the outcome itself."""
+    return "" if test.design == "association" else ABOUT.get(test.scale, ABOUT["difference"])[1].join(sides(hypothesis))
 
 
 def _label(outcome: str, pair: str, *, same_outcome: bool, same_pair: bool) -> str:
@@ -69,8 +87,20 @@ def in_words(hypothesis: Hypothesis, test: StatisticalTest[...], unit: str) -> s
     names = sides(hypothesis)
     about = ABOUT.get(test.scale, ABOUT["difference"])[0]
     pair = f" ({f' {about} '.join(names)})" if names else ""
+    if test.design == "association":
+        return f"the {test.estimates} of {outcome_name(hypothesis)}"
     outcome = "" if isinstance(hypothesis.outcome, PairOutcome) else f" of {outcome_name(hypothesis)}"
     return f"the {test.estimates}{outcome}{pair}" if test.design != "supplied" else f"the effect{outcome}"
+
+
+def beside_in_words(hypothesis: Hypothesis) -> tuple[str, ...]:
+    """Say what the test takes beside the outcome: "adjusted for baseline and region", "stratified by site"."""
+    named = {
+        "events counted per": (hypothesis.exposure,) if hypothesis.exposure else (),
+        "adjusted for": hypothesis.covariates or (),
+        "stratified by": hypothesis.strata or (),
+    }
+    return tuple(f"{words} {' and '.join(names)}" for words, names in named.items() if names)
 
 
 def null_in_words(hypothesis: Hypothesis, test: StatisticalTest[...], unit: str) -> str:

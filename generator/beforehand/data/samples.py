@@ -1,11 +1,12 @@
 """The one place that drops missing values: from a table and a hypothesis to the clean arrays of its test."""
 
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
 
+from beforehand.data.beside import beside, missing_beside, refuse_out_of_range, without
 from beforehand.data.dataset import Dataset
 from beforehand.data.sets import in_order, rows_of
 from beforehand.data.table import Table
@@ -33,6 +34,8 @@ class Samples:
     """Rows dropped for a missing value, in each group; for pairs, the pairs dropped."""
     undecided: int
     """Rows not considered because the condition of the hypothesis has no value for them."""
+    beside: dict[str, Any] = field(default_factory=dict)
+    """What the test takes beside the outcome, by its word, in the shape of the arrays."""
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -42,7 +45,10 @@ class Unlabelled:
     sizes: tuple[int, ...]
     """Units with an outcome in each group; for pairs, the number of complete pairs."""
     pooled: NDArray[Any]
-    """The outcomes of all groups together, ascending; for pairs, the sizes of the differences from the null value."""
+    """The outcomes of all groups together, ascending; for pairs, the sizes of the differences from the null value; for
+    an association both columns, each ascending; where there are strata, ascending in one stratum after the other."""
+    beside: dict[str, Any] = field(default_factory=dict)
+    """What the test takes beside the outcome, group by group: nothing of it is an outcome."""
 
 
 @dataclass(frozen=True)
@@ -55,16 +61,23 @@ class _Sides:
     paired: bool
     """Whether the sides stand in the same order, a pair at each place."""
     undecided: int
+    without: tuple[NDArray[np.bool_], ...]
+    """The rows of each side that lack what the test takes beside the outcome."""
 
     @property
     def missing(self) -> tuple[NDArray[np.bool_], ...]:
-        gone = [column.missing[rows] for column, rows in zip(self.columns, self.positions, strict=True)]
+        sides = zip(self.columns, self.positions, self.without, strict=True)
+        gone = [column.missing[rows] | without for column, rows, without in sides]
         return (gone[0] | gone[1],) * 2 if self.paired else tuple(gone)
 
     @property
+    def rows(self) -> tuple[Positions, ...]:
+        """The complete rows of each side."""
+        return tuple(rows[~gone] for rows, gone in zip(self.positions, self.missing, strict=True))
+
+    @property
     def complete(self) -> tuple[NDArray[Any], ...]:
-        sides = zip(self.columns, self.positions, self.missing, strict=True)
-        return tuple(column.values[rows[~gone]] for column, rows, gone in sides)
+        return tuple(column.values[rows] for column, rows in zip(self.columns, self.rows, strict=True))
 
 
 def take(dataset: Dataset, hypothesis: Hypothesis) -> Samples:
@@ -87,6 +100,7 @@ def take(dataset: Dataset, hypothesis: Hypothesis) -> Samples:
         rows_considered=np.unique(np.concatenate(sides.positions)).size,
         missing=tuple(int(gone.sum()) for gone in sides.missing[groups]),
         undecided=sides.undecided,
+        beside=beside(table, hypothesis, sides.rows),
     )
 
 
@@ -95,28 +109,36 @@ def unlabelled(dataset: Dataset, hypothesis: Hypothesis) -> Unlabelled:
 
     Of the outcomes it joins with the groups only whether they are missing, never a value.
     """
-    if STATISTICAL_TESTS[hypothesis.test].design == "supplied":
+    test, table = STATISTICAL_TESTS[hypothesis.test], dataset.tables[hypothesis.data]
+    if test.design == "supplied":
         return Unlabelled(sizes=(), pooled=np.empty(0))
-    sides = _sides(dataset.tables[hypothesis.data], hypothesis)
+    sides = _sides(table, hypothesis)
     complete = sides.complete
+    if test.design == "association":
+        return Unlabelled(sizes=(complete[0].size,), pooled=np.sort(np.stack(complete)))
     if sides.paired:
         null_value = hypothesis.null_hypothesis.margins[0]
         differences = np.abs(complete[0] - complete[1] - null_value)
         return Unlabelled(sizes=(differences.size,), pooled=np.sort(differences))
-    return Unlabelled(sizes=tuple(side.size for side in complete), pooled=np.sort(np.concatenate(complete)))
+    taken = beside(table, hypothesis, sides.rows)
+    taken.pop("time", None)  # it belongs to the outcome
+    pooled = np.concatenate(complete)
+    strata = np.concatenate(taken["strata"]) if "strata" in taken else np.zeros(pooled.size)
+    order = np.lexsort((pooled, strata))
+    return Unlabelled(sizes=tuple(side.size for side in complete), pooled=pooled[order], beside=taken)
 
 
 def _sides(table: Table, hypothesis: Hypothesis) -> _Sides:
     """Find the rows of each side, pairs by their key, and check what the test needs of them."""
     chosen = rows_of(table, hypothesis, what=f"hypothesis '{hypothesis.id}'")
     rows, undecided = chosen.rows, chosen.undecided
-    outcome, groups = hypothesis.outcome, hypothesis.groups
+    outcome, groups, paired = hypothesis.observed, hypothesis.groups, False
     if isinstance(outcome, PairOutcome):
-        here = (np.flatnonzero(rows),) * 2
-        columns = table.columns[outcome.first], table.columns[outcome.second]
-        sides = _Sides(here, columns, paired=True, undecided=undecided)
+        positions: tuple[Positions, ...] = (np.flatnonzero(rows),) * 2
+        columns: tuple[Column, ...] = (table.columns[outcome.first], table.columns[outcome.second])
+        paired = True
     elif groups is None:
-        sides = _Sides((np.flatnonzero(rows),), (_outcome(table, outcome),), paired=False, undecided=undecided)
+        positions, columns = (np.flatnonzero(rows),), (_outcome(table, outcome),)
     else:
         group = table.columns[groups.column]
         first, second = (
@@ -125,7 +147,11 @@ def _sides(table: Table, hypothesis: Hypothesis) -> _Sides:
         paired = hypothesis.matched_by is not None
         if paired:
             first, second = _matched(table, first, second, hypothesis)
-        sides = _Sides((first, second), (_outcome(table, outcome),) * 2, paired=paired, undecided=undecided)
+        positions, columns = (first, second), (_outcome(table, outcome),) * 2
+    for side in positions:
+        refuse_out_of_range(table, hypothesis, side)
+    lacking = tuple(without(table, hypothesis, side) for side in positions)
+    sides = _Sides(positions, columns, paired=paired, undecided=undecided, without=lacking)
     if STATISTICAL_TESTS[hypothesis.test].independent_units:
         _refuse_repeated_units(table, sides, hypothesis)
     return sides
@@ -220,10 +246,13 @@ def _refuse_unknown_units(table: Table, rows: Positions, hypothesis: Hypothesis)
 def _refuse_missing(table: Table, sides: _Sides, hypothesis: Hypothesis) -> None:
     sides_gone = zip(sides.columns, sides.positions, strict=True)
     gone = np.unique(np.concatenate([rows[column.missing[rows]] for column, rows in sides_gone]))
+    faults = list(missing_beside(table, hypothesis, np.unique(np.concatenate(sides.positions))))
     if gone.size:
         lines = in_order(table.lines[gone])
         told = f"hypothesis '{hypothesis.id}' allows no missing outcome (method: fail); it is missing on"
-        raise DataFault(table.declared.file, [Fault(lines[0], 0, f"{told} {line_list(lines)}.")])
+        faults.append(Fault(lines[0], 0, f"{told} {line_list(lines)}."))
+    if faults:
+        raise DataFault(table.declared.file, sorted(faults))
 
 
 def _supplied(dataset: Dataset, table: Table, hypothesis: Hypothesis) -> Samples:

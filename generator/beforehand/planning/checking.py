@@ -93,7 +93,14 @@ def _one(family: PlannedFamily, hypothesis: Hypothesis, dataset: Dataset | None)
     known = unlabelled(dataset, hypothesis) if dataset else None
     smallest = None
     if known and known.sizes:
-        smallest = test.smallest_p(known.sizes, known.pooled, alternative=hypothesis.side, **hypothesis.options)
+        smallest = test.smallest_p(
+            known.sizes,
+            known.pooled,
+            alternative=hypothesis.side,
+            null_value=null.values[0] if len(null.values) == 1 else None,
+            **hypothesis.options,
+            **known.beside,
+        )
         one_sided = hypothesis.side != "two_sided" or written.form == "outside"
         smallest = min(1.0, smallest * _reading(family, one_sided=one_sided))
     # the member with the smallest p of its family, the others at p = 1: the first step of any procedure

@@ -258,6 +258,8 @@ class GroupSummary:
     lower_quartile: float | None = None
     upper_quartile: float | None = None
     events: int | None = None
+    exposure: float | None = None
+    """The amount in which the events were counted, or the time until event or end of watching, in all."""
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -319,6 +321,8 @@ class HypothesisRecord:
     estimand: dict[str, str] = field(default_factory=dict)
     purpose: str = ""
     reason: str = ""
+    beside: tuple[str, ...] = ()
+    """What the test takes of each row beside the outcome, in words: "adjusted for baseline", "stratified by site"."""
 
 
 @dataclass(frozen=True, kw_only=True)

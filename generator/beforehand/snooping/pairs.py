@@ -123,7 +123,7 @@ def _groups_of(member: Hypothesis) -> Groups:
 
 
 def _outcome_of(member: Hypothesis) -> Hashable:
-    return (member.data, _groups_of(member).column, member.outcome)
+    return (member.data, _groups_of(member).column, member.outcome, member.time and member.time.column)
 
 
 def _pair_of(member: Hypothesis) -> frozenset[str]:

@@ -25,8 +25,8 @@ KEYS: dict[str, frozenset[str]] = {
     "Family": frozenset({"share", "truncation", "exploratory_after_gate", "dependence"}),
     "_Promised": frozenset({"false_rejections", "false_share"}),
     "PerHypothesis": frozenset({
-        "switch_to_superiority", "strata", "cluster", "random", "covariates", "exposure", "time", "non_detect",
-        "period", "sequence", "subject", "modifier", "truth",
+        "switch_to_superiority", "cluster", "random", "non_detect", "period", "sequence", "subject", "modifier",
+        "truth",
     }),
     "HypothesesFrom": frozenset({"planned_at_most", "keep", "levels_of"}),
     "MissingValues": frozenset({"imputations", "using", "shift"}),
@@ -40,7 +40,7 @@ WORDS: dict[tuple[str, str], tuple[str, ...]] = {
     ("StudyPromise", "criterion"): (
         "k_familywise_error_rate", "per_family_error_rate", "false_discovery_exceedance",
     ),
-    ("StudyPromise", "across_families"): ("parallel", "shares", "graph"),
+    ("Time", "ties"): ("breslow", "exact"),
     ("MissingValues", "method"): ("worst_case", "best_case", "multiple_imputation"),
     ("Family", "success"): ("all",),
 }  # fmt: skip

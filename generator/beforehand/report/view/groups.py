@@ -7,7 +7,7 @@ from beforehand.record.model import GroupSummary
 from beforehand.report.view import tables
 from beforehand.report.view.lines import Line
 from beforehand.report.view.model import Cell, Head, Row, Table
-from beforehand.spelling import NOTHING, THIN, decimal, integer
+from beforehand.spelling import NOTHING, THIN, decimal, integer, number
 
 NAMED = 2
 
@@ -24,14 +24,15 @@ NUMBERS: tuple[tuple[str, Callable[[GroupSummary], float | None]], ...] = (
 
 
 def group_tables(lines: tuple[Line, ...]) -> tuple[Table, ...]:
-    """Summarise the groups of one family: numbers and events in a table of their own."""
+    """Summarise the groups of one family: numbers, events and events by exposure in a table of their own."""
     numbers: Summaries = {}
     events: Summaries = {}
+    rates: Summaries = {}
     for line in lines:
         for one in line.hypothesis.summaries:
-            found = numbers if one.events is None else events
+            found = numbers if one.events is None else events if one.exposure is None else rates
             found.setdefault((line.hypothesis.outcome, one), []).append(line.label)
-    tables_found = (_numbers(numbers, len(lines)), _events(events, len(lines)))
+    tables_found = (_numbers(numbers, len(lines)), _events(events, len(lines)), _rates(rates, len(lines)))
     return tuple(table for table in tables_found if table.rows)
 
 
@@ -53,6 +54,17 @@ def _events(found: Summaries, of_all: int) -> Table:
         for (_, one), labels in found.items()
     ]  # fmt: skip
     return _table("Counts of events", ("Events", "Share"), found, cells)
+
+
+def _rates(found: Summaries, of_all: int) -> Table:
+    cells = [
+        (
+            *_sizes(one), Cell(integer(one.events or 0), "number"), Cell(number(one.exposure or 0.0, 6), "number"),
+            Cell(_rate(one), "number"), Cell(_users(labels, of_all), "next"),
+        )
+        for (_, one), labels in found.items()
+    ]  # fmt: skip
+    return _table("Events and what they were counted in", ("Events", "Exposure, or time in all", "Rate"), found, cells)
 
 
 def _table(caption: str, names: tuple[str, ...], found: Summaries, cells: list[tuple[Cell, ...]]) -> Table:
@@ -80,6 +92,10 @@ def _number(value: float | None, one: GroupSummary) -> Cell:
 
 def _share(one: GroupSummary) -> str:
     return f"{decimal(100 * (one.events or 0) / one.n, 1)}{THIN}%" if one.n else NOTHING
+
+
+def _rate(one: GroupSummary) -> str:
+    return number((one.events or 0) / one.exposure, 4) if one.exposure else NOTHING
 
 
 def _users(labels: list[str], of_all: int) -> str:

@@ -24,6 +24,8 @@ REASONS = {
 }
 Kind = tuple[str, ...]
 NAMED = 6
+BESIDE = 2
+"""The place of what tests take beside the outcome among the columns of their uses: shown where one takes anything."""
 
 
 def promised(record: Record, lines: tuple[Line, ...], figures: tuple[Figure, ...]) -> Promised:
@@ -180,17 +182,21 @@ def _use(hypothesis: HypothesisRecord) -> Kind:
     missing = hypothesis.missing_method.replace("_", " ") or "not stated"
     if hypothesis.missing_mechanism:
         missing = f"{missing} ({hypothesis.missing_mechanism})"
-    return hypothesis.data or "none", rows, missing, REASONS.get(hypothesis.reason, "not stated")
+    beside = "; ".join(hypothesis.beside)
+    return hypothesis.data or "none", rows, beside, missing, REASONS.get(hypothesis.reason, "not stated")
 
 
 def _uses(lines: tuple[Line, ...]) -> Table:
     uses = _grouped(lines, _use)
+    names = ("Data", "Analysis set", "Beside the outcome", "Missing values", "Reason for the analysis")
+    shown = [at for at in range(len(names)) if at != BESIDE or any(use[BESIDE] for use in uses)]
     body = (
-        Row(head=Cell(_names(ids, len(lines))), cells=tuple(Cell(text) for text in use)) for use, ids in uses.items()
+        Row(head=Cell(_names(ids, len(lines))), cells=tuple(Cell(use[at] or "nothing") for at in shown))
+        for use, ids in uses.items()
     )
     return Table(
         caption="The rows each hypothesis uses, and why it is asked", rows=tuple(body), style="uses",
-        head=tables.head("Hypotheses", "Data", "Analysis set", "Missing values", "Reason for the analysis"),
+        head=tables.head("Hypotheses", *(names[at] for at in shown)),
     )  # fmt: skip
 
 

@@ -2,6 +2,7 @@
 
 from collections.abc import Iterator
 
+from beforehand.spec.checks.beside import check_beside
 from beforehand.spec.checks.blocks import blocks_of
 from beforehand.spec.checks.data_sets import check_data_sets
 from beforehand.spec.checks.designs import check_data, check_design
@@ -41,6 +42,7 @@ def _within(document: Document, number: int) -> Iterator[Finding]:
     yield from check_repeats(document, number)
     yield from check_weights(document, number)
 
+        yield from check_beside(block)
 
 def _under_promise(document: Document, number: int) -> Iterator[Finding]:
     for block in blocks_of(document, number):

@@ -55,9 +55,11 @@ def _shape(block: Block) -> Iterator[Finding]:
     takes = f"the test '{test.name}'"
     if isinstance(written, HypothesesFrom):
         yield from _many(block, written)
-    elif written.outcome is None:
+    elif written.outcome is None and "time" not in test.takes:
         yield Finding(block.path, f"{block.name} needs the key 'outcome': the column that is tested")
-    if test.design != "pairs":
+    if test.design == "association":
+        yield from _association(block, wide=wide)
+    elif test.design != "pairs":
         if wide:
             yield Finding(
                 (*block.path, "outcome"), f"{block.name} has an outcome of two columns, and {takes} takes one column"
@@ -93,6 +95,19 @@ def _pairs(block: Block, *, wide: bool) -> Iterator[Finding]:
             f"{block.name} does not say what its pairs are. Write outcome: {{first, second}} for two columns of a "
             "row, or 'groups' and 'matched_by' for two rows.",
         )
+
+
+def _association(block: Block, *, wide: bool) -> Iterator[Finding]:
+    if not wide:
+        yield Finding(
+            block.path,
+            f"{block.name} does not say which two columns it relates. Write outcome: {{first, second}} in "
+            "'hypotheses'.",
+        )
+    for key in ("groups", "matched_by"):
+        if getattr(block.written, key) is not None:
+            told = f"{block.name} has '{key}', and the test '{block.written.test}' relates two columns of one row"
+            yield Finding((*block.path, key), told)
 
 
 def _many(block: Block, written: HypothesesFrom) -> Iterator[Finding]:
@@ -148,7 +163,7 @@ def _outcomes(block: Block) -> Iterator[Finding]:
     elif isinstance(written.outcome, EventOutcome):
         yield from _outcome(block, written.outcome.column, written.outcome.values, path, "outcome")
     elif isinstance(written.outcome, PairOutcome):
-        if block.test is None or block.test.design != "pairs":
+        if block.test is None or not block.test.aligned:
             return
         for key in ("first", "second"):
             yield from _outcome(block, getattr(written.outcome, key), None, (*path, key), "outcome")
@@ -163,15 +178,26 @@ def _outcome(block: Block, name: str, values: tuple[str, ...] | None, path: Path
     assert test is not None
     if name == _group_column(block):
         yield Finding(path, f"{block.name} has '{name}' both as outcome and as groups")
-    elif test.outcome == "number" and values:
+    elif test.outcome != "event" and values:
         at = path if key == "outcome" else (*block.path, key)
         yield Finding(at, f"{block.name} counts events, and the test '{test.name}' takes numbers. Name a column.")
     elif test.outcome == "event" and not values:
         how = "Write outcome: {column, values}." if key == "outcome" else "Write the key 'values'."
         yield Finding(path, f"{block.name} does not say which values count: the test '{test.name}' takes events. {how}")
+    elif test.outcome == "count" and name in block.columns and not _is_count(block, name):
+        yield Finding(
+            path,
+            f"{block.name} needs counts, and column '{name}' is not declared as {{kind: count}}: whole numbers from 0 "
+            "on, of a column of the file",
+        )
     else:
         yield from _of_kind(block, name, "text" if test.outcome == "event" else "number", path)
         yield from _values(block, name, values or (), path, key)
+
+
+def _is_count(block: Block, name: str) -> bool:
+    declared = block.data_set.columns.get(name) if block.data_set else None
+    return declared is not None and declared.kind == "count"
 
 
 def _values(block: Block, name: str, values: tuple[str, ...], path: Path, key: str) -> Iterator[Finding]:

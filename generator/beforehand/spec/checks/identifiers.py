@@ -95,4 +95,6 @@ def _outcomes(document: Document) -> Iterator[str]:
                 yield from (outcome.first, outcome.second)
             elif outcome:
                 yield outcome
+            elif written.time:
+                yield written.time.column
             yield from getattr(written, "outcomes", None) or ()

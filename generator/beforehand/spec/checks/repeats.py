@@ -5,6 +5,7 @@ from typing import Any
 
 import rfc8785
 
+from beforehand.hypothesis_tests.contract import STATISTICAL_TESTS
 from beforehand.spec.canonical import plain
 from beforehand.spec.model import Document, WrittenHypothesis
 from beforehand.spec.places import Finding
@@ -30,8 +31,14 @@ def check_repeats(document: Document, number: int) -> Iterator[Finding]:
 
 
 def _meaning(hypothesis: WrittenHypothesis) -> bytes:
-    """Write what is computed; first and second swapped with the side mirrored is the same question."""
+    """Write what is computed; first and second swapped with the side mirrored is the same question.
+
+    An association is the same whichever column is named first.
+    """
     written = {key: value for key, value in plain(hypothesis).items() if key not in _WORDS}
+    if hypothesis.test in STATISTICAL_TESTS and STATISTICAL_TESTS[hypothesis.test].design == "association":
+        written["outcome"] = sorted(dict(written.get("outcome") or {}).values())
+        return rfc8785.dumps(written)
     for key in ("groups", "outcome"):
         pair: Any = written.get(key)
         ordered = isinstance(pair, dict) and "first" in pair

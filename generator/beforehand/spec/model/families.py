@@ -86,8 +86,8 @@ class EachWith(Keys):
 class Comparisons(PerHypothesis):
     """The pairs of levels of one column, one hypothesis each."""
 
-    outcome: Outcome
-    """The column of the outcome, or {column, values} for an event."""
+    outcome: Outcome | None = None
+    """The column of the outcome, or {column, values} for an event; none where a time is given."""
     groups: Name
     """The category column; it must declare its levels."""
     pairs: Literal["all"] | EachWith

@@ -280,6 +280,13 @@ class Hypothesis(PerHypothesis):
     """The column or the label that a short form made this hypothesis of."""
 
     @property
+    def observed(self) -> Outcome | None:
+        """What is observed of each unit: the outcome, or whether the event of its time happened."""
+        if self.time is None:
+            return self.outcome
+        return EventOutcome(column=self.time.event.column, values=self.time.event.values)
+
+    @property
     def side(self) -> Alternative:
         """The side on which the null hypothesis is rejected: above, below, or two_sided."""
         sides: dict[NullForm, Alternative] = {"at_most": "above", "at_least": "below"}
