@@ -40,6 +40,7 @@ WORDS: dict[tuple[str, str], tuple[str, ...]] = {
     ("StudyPromise", "criterion"): (
         "k_familywise_error_rate", "per_family_error_rate", "false_discovery_exceedance",
     ),
+    ("StudyPromise", "across_families"): ("parallel", "shares", "graph"),
     ("Time", "ties"): ("breslow", "exact"),
     ("MissingValues", "method"): ("worst_case", "best_case", "multiple_imputation"),
     ("Family", "success"): ("all",),
