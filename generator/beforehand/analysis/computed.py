@@ -45,8 +45,9 @@ def compute(family: PlannedFamily, hypothesis: Hypothesis, dataset: Dataset) -> 
     confidence = float(hypothesis.intervals.unadjusted_level or reading.confidence())
     asked = _Asked(hypothesis, test, samples)
     result = asked.result(confidence)
-    shares = PROCEDURES[family.procedure].intervals == "bonferroni" and test.design != "supplied"
-    shared = reading.confidence(family.planned)
+    matches = PROCEDURES[family.procedure].intervals == "bonferroni" and family.sure_share is not None
+    shares = matches and test.design != "supplied"
+    shared = Reading(reading.level * (family.sure_share or 1.0), reading.level_is).confidence(family.planned)
     matching = asked.result(shared) if shares else None
     p_entered, entered_as = _entered(asked, result, reading)
     return Computed(

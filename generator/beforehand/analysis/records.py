@@ -43,6 +43,10 @@ from beforehand.spec.planned import PlannedFamily, Spec
 from beforehand.terms import State
 
 MISSING_NUMBER = math.nan
+MOVING_LEVEL = (
+    "The level of this family depends on what is found in others, so that no simultaneous interval has a confidence "
+    "known beforehand; only the unadjusted interval is printed."
+)
 
 
 def study_record(spec: Spec) -> StudyRecord:
@@ -151,7 +155,7 @@ def family_record(judged: JudgedFamily) -> FamilyRecord:
         local_level=None if math.isnan(local) or local == level else local,
         strong=procedure.strong,
         valid_under=procedure.valid_under,
-        no_intervals_because=procedure.no_intervals_because,
+        no_intervals_because=procedure.no_intervals_because or ("" if family.sure_share else MOVING_LEVEL),
         planned=family.planned,
         computed=int(judged.entered.has_result.sum()),
         members=tuple(member.id for member in family.members),
@@ -229,11 +233,11 @@ def _hypothesis(
         estimand=_estimand(computed),
         purpose=hypothesis.purpose or family.purpose or "",
         reason=hypothesis.reason or "",
+        beside=beside_in_words(hypothesis),
     )
 
 
 def _estimand(computed: Computed) -> dict[str, str]:
-        beside=beside_in_words(hypothesis),
     estimand = computed.hypothesis.estimand
     if estimand is None:
         return {}
@@ -254,14 +258,14 @@ def _summaries(computed: Computed) -> tuple[GroupSummary, ...]:
         _summary(name, values, missing, events=test.outcome in ("event", "count"))
         for name, values, missing in zip(names, samples.arrays, gone, strict=True)
     )
-
-
-def _summary(name: str, values: Any, missing: int, *, events: bool) -> GroupSummary:
-    n = len(values)
     amounts = samples.beside.get("exposure") or samples.beside.get("time")
     if not amounts:
         return found
     return tuple(replace(one, exposure=float(amount.sum())) for one, amount in zip(found, amounts, strict=True))
+
+
+def _summary(name: str, values: Any, missing: int, *, events: bool) -> GroupSummary:
+    n = len(values)
     if events:
         return GroupSummary(group=name, n=n, missing=missing, events=int(values.sum()))
     if not n:

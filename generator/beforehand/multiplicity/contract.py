@@ -56,6 +56,7 @@ PER_FAMILY = {
     "groups": "the planned number of groups",
     "sides": "on how many sides the statistics are judged: 1 or 2",
     "doubled": "whether the p of one side is doubled, because both sides share the level",
+    "passes": "the share that each hypothesis passes on to each when it is rejected, both in the written order",
 }
 INGREDIENTS = PER_MEMBER | PER_FAMILY
 """What an entry may ask for beyond p, by these keyword-only parameters; its other keyword-only ones are options."""

@@ -15,14 +15,15 @@ TESTS = (
     "permutation", "proportional_hazards", "rate_ratio", "risk_difference", "risk_ratio", "sign", "t_contrast", "trend",
 )  # fmt: skip
 PROCEDURES_LATER = (
-    "closed_testing", "dunnett", "games_howell", "graph", "local_false_discovery_rate", "max_t", "min_p",
+    "closed_testing", "dunnett", "games_howell", "local_false_discovery_rate", "max_t", "min_p",
     "online_false_discovery_rate", "romano_wolf", "scheffe", "step_down_dunnett", "tukey",
 )  # fmt: skip
 
 KEYS: dict[str, frozenset[str]] = {
-    "Document": frozenset({"graph", "looks", "supportive", "describe"}),
+    "Document": frozenset({"looks", "supportive", "describe"}),
     "DataSet": frozenset({"feature", "samples"}),
-    "Family": frozenset({"share", "truncation", "exploratory_after_gate", "dependence"}),
+    "Family": frozenset({"exploratory_after_gate", "dependence"}),
+    "Graph": frozenset({"dependence"}),
     "_Promised": frozenset({"false_rejections", "false_share"}),
     "PerHypothesis": frozenset({
         "switch_to_superiority", "cluster", "random", "non_detect", "period", "sequence", "subject", "modifier",
@@ -40,10 +41,9 @@ WORDS: dict[tuple[str, str], tuple[str, ...]] = {
     ("StudyPromise", "criterion"): (
         "k_familywise_error_rate", "per_family_error_rate", "false_discovery_exceedance",
     ),
-    ("StudyPromise", "across_families"): ("parallel", "shares", "graph"),
     ("Time", "ties"): ("breslow", "exact"),
     ("MissingValues", "method"): ("worst_case", "best_case", "multiple_imputation"),
-    ("Family", "success"): ("all",),
+    ("Graph", "local"): ("simes", "parametric"),
 }  # fmt: skip
 
 SUFFIXES = (".csv", ".tsv", ".csv.gz", ".tsv.gz")
@@ -88,8 +88,6 @@ def _word(model: BaseModel, key: str, value: Any, path: Path) -> Iterator[Findin
     later = WORDS.get((type(model).__name__, key), ())
     if isinstance(value, str) and value in later:
         yield Finding(path, f"'{value}' for '{key}' is not available yet")
-    elif key == "success" and not isinstance(value, str):
-        yield Finding(path, "'at_least' for 'success' is not available yet")
     elif key == "test" and value not in STATISTICAL_TESTS:
         yield Finding(path, f"the test '{value}' is not available yet")
     elif key == "procedure" and value not in PROCEDURES:

@@ -98,14 +98,23 @@ def _planned(family: Family, document: Document) -> PlannedFamily:
         question=family.question,
         purpose=family.purpose,
         procedure=family.procedure,
-        procedure_options=with_defaults(family.procedure_options, PROCEDURES[family.procedure]),
+        procedure_options=with_defaults(family.options, PROCEDURES[family.procedure]),
         promise=family.promise or _of_study(document.promise),
         success=family.success,
         members=members,
         planned=from_data.planned or 0 if from_data else len(members),
         from_data=from_data,
         stands_apart=family.promise is not None,
+        sure_share=_sure_share(family, document),
     )
+
+
+def _sure_share(family: Family, document: Document) -> float | None:
+    scheme, order = document.promise.across_families, document.promise.order or ()
+    if family.promise is None and family.share is not None:
+        return float(family.share)
+    depends = scheme == "graph" or (scheme == "parallel" and family.id not in order[:1])
+    return None if depends and family.promise is None else 1.0
 
 
 def _with_defaults(source: HypothesesFrom, document: Document) -> HypothesesFrom:

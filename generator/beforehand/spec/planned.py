@@ -40,6 +40,8 @@ class PlannedFamily:
     """The short form, where one row of the data makes one hypothesis."""
     stands_apart: bool = False
     """Whether the family has its own promise, so that the study's does not cover it."""
+    sure_share: float | None = 1.0
+    """The share of the promise's level at which the family is tested if it is; None where that depends on others."""
 
 
 @dataclass(frozen=True)

@@ -6,10 +6,13 @@ from beforehand.spec.checks.beside import check_beside
 from beforehand.spec.checks.blocks import blocks_of
 from beforehand.spec.checks.data_sets import check_data_sets
 from beforehand.spec.checks.designs import check_data, check_design
+from beforehand.spec.checks.graphs import check_graph
 from beforehand.spec.checks.identifiers import check_answers, check_assumptions, check_ids
 from beforehand.spec.checks.promises import check_levels, check_procedure, check_scheme
 from beforehand.spec.checks.repeats import check_repeats
+from beforehand.spec.checks.sharing import check_separable, check_shares, check_truncation
 from beforehand.spec.checks.sides import check_claim, check_direction, check_null, check_options
+from beforehand.spec.checks.success import check_success
 from beforehand.spec.checks.weights import check_weights
 from beforehand.spec.model import Document
 from beforehand.spec.places import Finding
@@ -27,6 +30,9 @@ def findings(document: Document, *, families: bool, promise: bool) -> Iterator[F
         yield from check_levels(document)
     if families and promise:
         yield from check_scheme(document)
+        yield from check_shares(document)
+        yield from check_separable(document)
+        yield from check_graph(document)
     if families:
         yield from check_answers(document)
         yield from check_assumptions(document)
@@ -36,15 +42,17 @@ def _within(document: Document, number: int) -> Iterator[Finding]:
     for block in blocks_of(document, number):
         yield from check_data(block, document)
         yield from check_design(block)
+        yield from check_beside(block)
         yield from check_null(block, document)
         yield from check_claim(block)
         yield from check_options(block)
     yield from check_repeats(document, number)
     yield from check_weights(document, number)
+    yield from check_truncation(document, number)
 
-        yield from check_beside(block)
 
 def _under_promise(document: Document, number: int) -> Iterator[Finding]:
     for block in blocks_of(document, number):
         yield from check_direction(block, document)
     yield from check_procedure(document, number)
+    yield from check_success(document, number)

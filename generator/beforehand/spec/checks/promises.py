@@ -5,9 +5,9 @@ from collections.abc import Iterator
 from beforehand.multiplicity.contract import PROCEDURES, Procedure
 from beforehand.spec.checks.blocks import blocks_of, promise_of
 from beforehand.spec.checks.sides import check_level_is
-from beforehand.spec.expand import levels_of, pairs_of
+from beforehand.spec.checks.sizes import size_of
 from beforehand.spec.hints import nearest
-from beforehand.spec.model import Comparisons, Document, Family, HypothesesFrom
+from beforehand.spec.model import Document
 from beforehand.spec.options import faults_of
 from beforehand.spec.places import Finding, Path
 from beforehand.terms import CRITERION_WORDS, Criterion
@@ -33,7 +33,8 @@ def check_scheme(document: Document) -> Iterator[Finding]:
         yield Finding(
             ("promise",),
             f"the promise needs the key 'across_families', because it covers {len(covered)} families "
-            f"({', '.join(covered)}). Write serial with an order, or separate and a promise for each.",
+            f"({', '.join(covered)}). Write serial or parallel with an order, shares, graph, or separate and a promise "
+            "for each.",
         )
     if promise.across_families is not None and promise.criterion != "familywise_error_rate":
         yield Finding(
@@ -101,14 +102,17 @@ def check_procedure(document: Document, number: int) -> Iterator[Finding]:
     procedure = PROCEDURES[family.procedure]
     criterion = promise_of(document, family).criterion
     # One hypothesis needs no adjustment: its own level is the family's, whichever procedure is named.
-    if criterion and not _keeps(procedure, criterion) and _count(document, family) != 1:
+    if criterion and not _keeps(procedure, criterion) and size_of(document, family) != 1:
         keeping = [name for name in PROCEDURES if _keeps(PROCEDURES[name], criterion)]
         yield Finding(
             (*path, "procedure"),
             f"family '{family.id}' promises the {CRITERION_WORDS[criterion]}, and '{family.procedure}' controls the "
             f"{CRITERION_WORDS[procedure.controls]}. It is kept by: {', '.join(keeping)}.",
         )
-    for name, text in faults_of(family.procedure_options, procedure, "procedure"):
+    written = dict(family.procedure_options)
+    if "truncation" in procedure.options:
+        written.setdefault("truncation", 0.0)  # a key of the family, which has a check of its own
+    for name, text in faults_of(written, procedure, "procedure"):
         at = (*path, "procedure_options", name) if name else path
         yield Finding(at, f"family '{family.id}': {text}", at_key=True)
 
@@ -116,15 +120,3 @@ def check_procedure(document: Document, number: int) -> Iterator[Finding]:
 def _keeps(procedure: Procedure, criterion: Criterion) -> bool:
     """Whether a procedure keeps what is promised; a family-wise error rate whichever hypotheses are true."""
     return procedure.keeps(criterion) and (procedure.strong or criterion != "familywise_error_rate")
-
-
-def _count(document: Document, family: Family) -> int | None:
-    if family.hypotheses is not None:
-        return len(family.hypotheses)
-    (written,) = family.written
-    if isinstance(written, HypothesesFrom):
-        return len(written.outcomes) if written.outcomes else written.planned
-    if isinstance(written, Comparisons):
-        known = [data_set.id for data_set in document.data]
-        return len(pairs_of(written, levels_of(document, written))) if (written.data or known[0]) in known else None
-    return None

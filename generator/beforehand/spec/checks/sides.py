@@ -71,12 +71,20 @@ def _must_have_direction(block: Block, document: Document) -> str | None:
         return "the study is confirmatory"
     if "success" in block.family.model_fields_set:
         return "its family has 'success'"
-    return "its family comes before another" if _opens_a_gate(block, document) else None
+    return _opens_a_gate(block, document)
 
 
-def _opens_a_gate(block: Block, document: Document) -> bool:
-    order = document.promise.order or ()
-    return block.family.id in order[:-1] and block.family.promise is None
+def _opens_a_gate(block: Block, document: Document) -> str | None:
+    """Say how a rejection lets another family or hypothesis have its turn; None where it doesn't."""
+    family, order, graph = block.family, document.promise.order or (), document.graph
+    if family.promise is not None:
+        return None
+    if family.id in order[:-1]:
+        return "its family comes before another"
+    names = (getattr(block.written, "id", ""), family.id)
+    senders = {one.from_ for one in graph.pass_} if graph else set()
+    passes_on = any(one in names or one.startswith(f"{family.id}/") for one in senders)
+    return "it passes its share of the level on" if passes_on else None
 
 
 def check_level_is(block: Block, document: Document) -> bool:

@@ -65,7 +65,7 @@ class StudyPromise(_Promised):
         if not separate and (self.criterion is None or self.level is None):
             raise refused("needs 'criterion' and 'level': the error rate that is promised, and how high it may be")
         if self.order and self.across_families not in ("serial", "parallel"):
-            raise refused("has an 'order', which needs across_families: serial")
+            raise refused("has an 'order', which needs across_families: serial or parallel")
         return self
 
 
@@ -183,6 +183,12 @@ class Family(Keys):
         if sum(getattr(self, form) is not None for form in forms) != 1:
             raise refused("must have exactly one of 'comparisons', 'hypotheses' and 'hypotheses_from'")
         return self
+
+    @property
+    def options(self) -> dict[str, Setting]:
+        """The options of the procedure, of which the truncation is one."""
+        truncation = {} if self.truncation is None else {"truncation": self.truncation}
+        return {**self.procedure_options, **truncation}
 
     @property
     def written(self) -> tuple[Comparisons | WrittenHypothesis | HypothesesFrom, ...]:
