@@ -23,6 +23,9 @@ COMPARISONS = [name for name in COMPUTED if STATISTICAL_TESTS[name].design != "o
 KINDS = ("plain", "tied", "few", "far", "tiny", "huge", "skewed")
 # sums of at most a few hundred terms, and t distributions whose tails are good to about 1e-12
 NEARLY = 1e-10
+# what options that are numbers may be; a test that draws needs a seed, and few draws keep these tests quick
+NUMBERS_OF = {"draws": (999, 1_500), "seed": (7, 20310511), "trim": (0.0, 0.1, 0.25)}
+DRAWS = {"draws": 999, "seed": 7}
 
 
 def entry_of(name: str) -> Entry:
@@ -64,13 +67,19 @@ def null_near(entry: Entry, samples: Samples, random: Generator) -> float:
 def options(entry: Entry, random: Generator) -> dict[str, Any]:
     """Choose each of the entry's own options."""
     words = {
-        name: (True, False) if p.annotation is bool else get_args(p.annotation) for name, p in entry.options.items()
+        name: (True, False) if p.annotation is bool else NUMBERS_OF.get(name) or get_args(p.annotation)
+        for name, p in entry.options.items()
     }
     return {name: values[random.integers(len(values))] for name, values in words.items()}
 
 
+def draws(entry: Entry) -> dict[str, Any]:
+    """The options of a test that draws."""
+    return {name: value for name, value in DRAWS.items() if name in entry.options}
+
+
 def result(entry: Entry, samples: Samples, **settings: Any) -> Outcome:
-    found = entry(*samples, **settings)
+    found = entry(*samples, **draws(entry), **settings)
     assert isinstance(found, Outcome), found
     return found
 
@@ -83,7 +92,7 @@ def computable(
     for kind in kinds * 3:
         samples = draw(entry, random, kind)
         null_value = null_near(entry, samples, random)
-        if isinstance(entry(*samples, null_value=null_value), Outcome):
+        if isinstance(entry(*samples, null_value=null_value, **draws(entry)), Outcome):
             yield samples, null_value
 
 
@@ -111,7 +120,8 @@ def test_declares_what_it_is(name: str) -> None:
     parameters = inspect.signature(entry.compute).parameters
     assert all(parameters[setting].kind is inspect.Parameter.KEYWORD_ONLY for setting in COMMON)
     assert all(option in text for option in entry.options)
-    assert all(option.default is not inspect.Parameter.empty for option in entry.options.values())
+    # a seed is written into the spec: no default would be anybody's choice
+    assert all(option.default is not option.empty or name == "seed" for name, option in entry.options.items())
     second = inspect.signature(STATISTICAL_TESTS.module(name).second_route)
     assert str(second) == str(inspect.signature(entry.compute))  # str: a default that is nan is not equal to itself
 
@@ -123,8 +133,8 @@ def test_input_is_left_alone(name: str) -> None:
     before = [sample.copy() for sample in samples]
     for sample in samples:
         sample.flags.writeable = False
-    entry(*samples)
-    entry.again(*samples)
+    entry(*samples, **draws(entry))
+    entry.again(*samples, **draws(entry))
     for sample, copy in zip(samples, before, strict=True):
         np.testing.assert_array_equal(sample, copy)
 
@@ -190,9 +200,7 @@ def test_a_common_offset_changes_nothing(name: str) -> None:
     for _ in range(6):
         # eighths: sums with 2^40 are exact
         samples = tuple(np.round(sample * 8) / 8 for sample in draw(entry, random))
-        here, there = entry(*samples), entry(*(sample + 2.0**40 for sample in samples))
-        assert isinstance(here, Outcome)
-        assert isinstance(there, Outcome)
+        here, there = result(entry, samples), result(entry, tuple(sample + 2.0**40 for sample in samples))
         assert (here.p, here.estimate, here.lower, here.upper) == (there.p, there.estimate, there.lower, there.upper)
 
 
@@ -216,7 +224,7 @@ def test_constant_and_empty_data_have_no_result(name: str, route: str) -> None:
     how_many = 1 if entry.design == "one_sample" else 2
     for size in (0, 1, 12):
         value = True if entry.outcome == "event" else 7.25
-        found = ask(*[np.full(size, value)] * how_many)
+        found = ask(*[np.full(size, value)] * how_many, **draws(entry))
         assert isinstance(found, NotComputed)
         assert found.reason
         assert found.n == ((size,) if entry.design != "two_groups" else (size, size))
@@ -229,7 +237,7 @@ def test_settings_out_of_range_are_refused(name: str) -> None:
     for settings in ({"alternative": "greater"}, {"confidence": 95}, {"confidence": 1.0}, {"null_value": math.inf}):
         for ask in (entry, entry.again):
             with pytest.raises(ValueError, match="found"):
-                ask(*samples, **settings)
+                ask(*samples, **draws(entry), **settings)
 
 
 @pytest.mark.parametrize("name", COMPUTED)
