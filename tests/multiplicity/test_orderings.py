@@ -7,6 +7,7 @@ import numpy as np
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
+from multiplicity.given import options_for
 
 from beforehand.multiplicity.contract import PROCEDURES
 
@@ -23,6 +24,8 @@ CHAINS = [
 NEARLY = [
     ("benjamini_hochberg", "hommel", "hochberg"),
     ("holm_sidak", "sidak"),
+    ("lehmann_romano", "holm"),
+    ("storey_q", "benjamini_hochberg"),
 ]
 
 
@@ -32,5 +35,6 @@ NEARLY = [
 @settings(derandomize=True, deadline=None, max_examples=5000 if os.environ.get("BEFOREHAND_THOROUGH") else 200)
 @given(p=st.lists(st.floats(0, 1, allow_subnormal=False), min_size=1, max_size=40))
 def test_from_the_mildest_to_the_strictest(chain: tuple[str, ...], rounding: float, p: list[float]) -> None:
-    for milder, stricter in pairwise([PROCEDURES[name](p) for name in chain]):
+    adjusted = [PROCEDURES[name](p, **options_for(PROCEDURES[name])) for name in chain]
+    for milder, stricter in pairwise(adjusted):
         assert np.all(milder <= stricter * (1 + rounding))

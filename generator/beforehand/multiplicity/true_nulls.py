@@ -26,13 +26,14 @@ def share_of_true_nulls(p: Ascending, by: Way) -> float:
     by : {"smoother", "bootstrap", "from_half"}
         ``smoother``: the share of p-values from each point on, relative to what true nulls would give, smoothed by a
         natural cubic spline with three degrees of freedom and read at 0.95. ``bootstrap``: the same at the point with
-        the smallest estimated mean squared error, in its closed form, so that nothing is drawn. ``from_half``: the
-        p-values above 0.5 and one more.
+        the smallest estimated mean squared error, in its closed form, so that nothing is drawn. ``from_half``: twice
+        the p-values above 0.5 and one more.
 
     Returns
     -------
     float
-        From 1/m to 1: at least one null is taken to be true.
+        From 1/m to 1: at least one null is taken to be true. Only ``from_half`` can be above 1, and has to be left
+        there: cut off at 1 it wouldn't keep the false discovery rate when all nulls are true.
 
     References
     ----------
@@ -47,11 +48,10 @@ def share_of_true_nulls(p: Ascending, by: Way) -> float:
     if m == 0:
         return 1.0
     if by == "from_half":
-        estimate = 2.0 * float(m - np.searchsorted(p, 0.5, side="right") + 1) / m
-    else:
-        beyond = m - np.searchsorted(p, POINTS)
-        shares = beyond / (m * (1 - POINTS))
-        estimate = float(np.sum(smoothing() * shares)) if by == "smoother" else _least_error(beyond, shares, m)
+        return 2.0 * float(m - np.searchsorted(p, 0.5, side="right") + 1) / m
+    beyond = m - np.searchsorted(p, POINTS)
+    shares = beyond / (m * (1 - POINTS))
+    estimate = np.sum(smoothing() * shares) if by == "smoother" else _least_error(beyond, shares, m)
     return float(np.clip(estimate, 1 / m, 1.0))
 
 

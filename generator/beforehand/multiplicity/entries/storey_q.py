@@ -36,7 +36,8 @@ def storey_q(p: Ascending, *, null_share: Way = "smoother") -> Steps:
 
     Keeps the false discovery rate asymptotically, for many hypotheses that are independent or weakly dependent (Storey,
     Taylor & Siegmund 2004); below about a hundred the estimate is too uncertain for a promise. ``from_half`` keeps it
-    for any number of independent hypotheses, and rejects none with p above 0.5 (theorem 3 there). A q-value can be
+    for any number of independent hypotheses, and rejects none with p above 0.5 (theorem 3 there); its estimate can
+    be above 1, and then asks for more than Benjamini and Hochberg's procedure. A q-value can be
     smaller than p; and because the share is estimated, raising one p can lower the q-value of another.
 
     Parameters
@@ -108,7 +109,8 @@ def replay(p: list[float], level: float, null_share: str = "smoother") -> dict[s
                 times = rows[j][i] / rows[i][i]
                 rows[j] = [a - times * b for a, b in zip(rows[j], rows[i])]  # noqa: B905
         m0 = counts[-1] - w * rows[-1][-1] / rows[-1][-2]
-    m0 = min(max(m0, 1.0), float(m))
+    if null_share != "from_half":  # which may be above m, and has to be left there
+        m0 = min(max(m0, 1.0), float(m))
 
     highest = 0.5 if null_share == "from_half" else 1.0
     adjusted, smallest = {}, 1.0
