@@ -309,7 +309,7 @@ def test_the_text(procedures: tuple[str, ...]) -> None:
     tree = ast.parse(text, feature_version=(3, 8))
     imported = {alias.name for node in ast.walk(tree) if isinstance(node, ast.Import) for alias in node.names}
     imported |= {str(node.module) for node in ast.walk(tree) if isinstance(node, ast.ImportFrom)}
-    assert imported <= {"__future__", "csv", "fractions", "hashlib", "io", "json", "sys", "pathlib", "typing"}
+    assert imported <= {"__future__", "csv", "fractions", "hashlib", "io", "json", "math", "sys", "pathlib", "typing"}
     assert text == recheck_text(tuple(reversed(procedures)), tuple(SCHEMES))
     assert [name for name in PROCEDURES if f"def replay_{name}(" in text] == sorted(set(procedures) - set(SCHEMES))
     assert [name for name in SCHEMES if f"def across_{name}(" in text] == sorted(SCHEMES)

@@ -17,6 +17,8 @@ from beforehand.analysis.families import (
     order_of,
     scheme_of,
 )
+from beforehand.analysis.ingredients import measured, measured_again
+from beforehand.analysis.matching import with_simultaneous
 from beforehand.analysis.records import (
     family_record,
     hypothesis_records,
@@ -128,7 +130,8 @@ def _decide(
             seconds.append(second)
         entered.append(_enter(family, [computed[member.id] for member in family.members], seconds))
     progress("adjusting and deciding, twice")
-    return computed, judge(spec, tuple(entered), agreement)
+    judged = judge(spec, tuple(entered), agreement)
+    return with_simultaneous(judged, computed), judged
 
 
 def _enter(family: PlannedFamily, computed: list[Computed], seconds: list[SecondResult]) -> EnteredFamily:
@@ -138,6 +141,8 @@ def _enter(family: PlannedFamily, computed: list[Computed], seconds: list[Second
         second_p=tuple(second.p_entered for second in seconds),
         has_result=np.array([isinstance(one.result, Outcome) for one in computed], dtype=bool),
         against_claim=np.array([one.side_agrees == "no" for one in computed], dtype=bool),
+        measured=measured(family, computed),
+        second_measured=measured_again(family, seconds),
     )
 
 

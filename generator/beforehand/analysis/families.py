@@ -1,15 +1,17 @@
 """Families judged: each by its own procedure, all together by the scheme; and both a second time on plain lists."""
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
 
 from beforehand.analysis.agreement import Agreement, bound_near
+from beforehand.analysis.succeeding import success_again, success_of
 from beforehand.multiplicity.contract import PROCEDURES, Ordered, Procedure, Steps, Vector
 from beforehand.multiplicity.scheme import SCHEMES, Falls, FamilyDecision, FamilyResult, Plain
+from beforehand.multiplicity.success import Success
 from beforehand.multiplicity.survival import largest_families
 from beforehand.spec.model import Exact
 from beforehand.spec.planned import PlannedFamily, Spec
@@ -31,6 +33,10 @@ class EnteredFamily:
     """The same from the second computation."""
     has_result: NDArray[np.bool_]
     against_claim: NDArray[np.bool_]
+    measured: dict[str, Any] = field(default_factory=dict)
+    """What the tests found, where the procedure judges that instead of p: statistics, degrees of freedom, sizes."""
+    second_measured: dict[str, Any] = field(default_factory=dict)
+    """The same from the second computation."""
 
     @property
     def procedure(self) -> Procedure:
@@ -41,6 +47,11 @@ class EnteredFamily:
     def adjusted_by_scheme(self) -> bool:
         """Whether the family has no adjusted p of its own: the scheme of the procedure's name adjusts its members."""
         return self.procedure.name in SCHEMES
+
+    @property
+    def may_open(self) -> NDArray[np.bool_]:
+        """Whether each member counts as rejected where it is: with a result, and not against its claim."""
+        return self.has_result & ~self.against_claim
 
     @property
     def level(self) -> float:
@@ -55,6 +66,7 @@ class EnteredFamily:
             "weights": [1 / m if one.weight is None else float(one.weight) for one in self.family.members],
             "positions": list(range(m)),
             "level": self.level,
+            **self.measured,
         }
         needed = {name: value for name, value in ingredients.items() if name in self.procedure.needs}
         return needed | dict(self.family.procedure_options)
@@ -63,6 +75,11 @@ class EnteredFamily:
     def replayed_with(self) -> dict[str, Any]:
         """The same for a replay, to which the level comes by itself."""
         return {name: value for name, value in self.given.items() if name != "level"}
+
+    @property
+    def second_replayed_with(self) -> dict[str, Any]:
+        """The same from the second computation."""
+        return {name: self.second_measured.get(name, value) for name, value in self.replayed_with.items()}
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -81,6 +98,8 @@ class JudgedFamily:
     """For each member the p-value that its rank has to meet."""
     arithmetic: tuple[str, ...]
     """For each member where its product comes from, where it is no multiple of p."""
+    success: Success | None
+    """What its claim about several hypotheses together came to; None where any rejection is a success."""
 
 
 def scheme_of(spec: Spec) -> AcrossFamilies:
@@ -158,6 +177,7 @@ def _judged(entered: EnteredFamily, decision: FamilyDecision) -> JudgedFamily:
     return JudgedFamily(
         entered=entered,
         decision=decision,
+        success=success_of(entered.family, entered.p, entered.may_open, decision),
         rank=ordered.unsorted(np.arange(1, entered.p.size + 1)),
         factor=ordered.unsorted(steps.factor),
         product=ordered.unsorted(steps.product),
@@ -183,6 +203,7 @@ def _fallen(entered: EnteredFamily, decision: FamilyDecision, falls: Falls) -> J
         from_rank=falls.from_step,
         thresholds=np.full(entered.p.size, np.nan),
         arithmetic=tuple("" if step else "no share of the level reaches it" for step in falls.step),
+        success=None,
         survives_up_to=np.zeros(entered.p.size, dtype=np.int64),
     )
 
@@ -197,7 +218,7 @@ def _judge_again(
     given: dict[str, Any],
 ) -> None:
     """Adjust and decide again from the second computation's p, and compare everything."""
-    again = SCHEMES[scheme].replay([_plain(*pair) for pair in zip(entered, results, strict=True)], **given)
+    again = SCHEMES[scheme].replay([_plain(one) for one in entered], **given)
     for e, result, first, second in zip(entered, results, decided, again, strict=True):
         local = e.level if second["local_level"] is None else second["local_level"]
         if not e.adjusted_by_scheme:
@@ -205,20 +226,21 @@ def _judge_again(
         if scheme != "separate":
             _compare(agreement, e, "adjusted p across families", first.p_study, second["p_study"], near=e.level)
         agreement.same(e.family.id, "gate", first.closed_by, second["closed_by"])
+        _compare_success(agreement, e, first, level=0.0 if second["closed_by"] else local)
         for index, member in enumerate(e.family.members):
             state = _state_again(e, index, tested=second["tested"][index], rejected=second["rejected"][index])
             agreement.same(member.id, "decision", first.states[index], state)
 
 
-def _plain(entered: EnteredFamily, result: FamilyResult) -> Plain:
+def _plain(entered: EnteredFamily) -> Plain:
     p = list(entered.second_p)
     return {
         "id": entered.family.id,
-        "members": list(result.members),
+        "members": [member.id for member in entered.family.members],
         "level": entered.level,
         "p": p,
-        "may_open": result.may_open.tolist(),
-        "judge": lambda level: entered.procedure.replay(p, level, **entered.replayed_with),
+        "may_open": entered.may_open.tolist(),
+        "judge": lambda level: entered.procedure.replay(p, level, **entered.second_replayed_with),
     }
 
 
@@ -228,6 +250,15 @@ def _compare(
     for member, x, y in zip(e.family.members, first, second, strict=True):
         bound = bound_near(near, float(x), bound=ADJUSTED_BOUND)
         agreement.numbers(member.id, quantity, float(x), float(y), bound=bound)
+
+
+def _compare_success(agreement: Agreement, e: EnteredFamily, decision: FamilyDecision, *, level: float) -> None:
+    first = success_of(e.family, e.p, e.may_open, decision)
+    if first is not None:
+        again = success_again(list(e.second_p), e.may_open.tolist(), at_least=first.at_least, level=level)
+        bound = bound_near(level, first.p, bound=ADJUSTED_BOUND)
+        agreement.numbers(e.family.id, "joint p of a family", first.p, again.p, bound=bound)
+        agreement.same(e.family.id, "success of a family", first.reached, again.reached)
 
 
 def _state_again(e: EnteredFamily, index: int, *, tested: bool, rejected: bool) -> State:

@@ -21,7 +21,7 @@ def by_largest(
     arithmetic : callable
         Gives for a rank what its tail is, in words.
     critical : callable
-        Gives for a level the threshold of the p-value of each rank.
+        Gives for a level above 0 and below 1/2 the threshold of the p-value of each rank.
 
     Returns
     -------
@@ -34,5 +34,5 @@ def by_largest(
         product=np.maximum(tails, p),
         taken_from=np.arange(p.size),
         arithmetic=tuple(arithmetic(rank) for rank in range(p.size)),
-        critical=critical,
+        critical=lambda level: critical(level) if 0 < level < 0.5 else np.full(p.size, np.nan),
     )

@@ -13,6 +13,7 @@ import csv
 import hashlib
 import io
 import json
+import math  # noqa: F401 -- for the replays
 import sys
 from pathlib import Path
 from typing import Any, Callable, Iterator  # noqa: UP035 -- read by Python 3.8 too
@@ -26,6 +27,8 @@ READ = ("id", "family", "p", "p_entered", "entered_as", "side_agrees", "rank", "
 PROCEDURES: dict[str, Callable[..., Any]] = {}
 SCHEMES: dict[str, Callable[..., Any]] = {}
 TAKEN: dict[str, str] = {}  # what a procedure or scheme takes as recorded, beside the p-values
+FROM: dict[str, str] = {}  # what a procedure is recomputed from, where that is more than p_entered
+CHECKS: list[Callable[..., Iterator[str]]] = []  # what is checked of such a family beside its decisions
 
 
 class Unreadable(Exception):
@@ -57,11 +60,14 @@ def main(arguments: list[str]) -> int:
 
 def say_what_is_done(hypotheses: int, families: list[dict[str, Any]], scheme: str) -> None:
     """Print what is recomputed and what is taken as recorded."""
-    used = [*sorted({family["procedure"] for family in families}), scheme]
-    whole = [name for name in used if name in {**PROCEDURES, **SCHEMES} and name not in TAKEN]
+    used = [*sorted({family["procedure"] for family in families} - {scheme}), scheme]
+    whole = [name for name in used if name in {**PROCEDURES, **SCHEMES} and name not in {**TAKEN, **FROM}]
     print(f"Read: {hypotheses} hypotheses in {len(families)} families.")
     print(f"Recomputed: the columns {', '.join(RECOMPUTED)} and product, and each family's gate and counts;")
     print(f"  from column p_entered alone: {', '.join(whole) or 'nothing'}.")
+    for name in used:
+        if name in FROM:
+            print(f"  from {FROM[name]}: {name}.")
     print("Taken as recorded: p, from which p_entered has to follow as the column entered_as says (of a two-sided test")
     print("  that enters with the side of its claim, that side's p); the families, their members and levels; what the")
     print("  plan gives them (weights, shares, a graph); the sides of the estimates; every other column.")
@@ -198,6 +204,8 @@ def compare_group(scheme: str, beyond: Any, group: list[dict[str, Any]], by_id: 
     again = SCHEMES[scheme]([plain(family, members[k]) for k, family in enumerate(group)], **beyond)
     for k, family in enumerate(group):
         yield from compare_family(family, members[k], again[k])
+        for check in CHECKS:
+            yield from check(family, members[k])
         if family["procedure"] == scheme:  # it adjusts all of them together, and ranks are steps of one walk
             yield from trail(members[k], [row for rows in members for row in rows], family["multiples"], "p_study")
         elif not again[k]["closed_by"]:
@@ -249,6 +257,19 @@ def compare_family(family: dict[str, Any], rows: list[Any], again: Any) -> Itera
         alike = isinstance(recorded, float) and isinstance(value, float) and agree(recorded, value)
         if not alike and recorded != value:
             yield f"record.json, family {family['id']!r}, {name}: recorded {recorded!r}, recomputed {value!r}"
+    if family.get("success"):
+        yield from success(family, rows, 0.0 if again["closed_by"] else again["local_level"])
+
+
+def success(family: dict[str, Any], rows: list[dict[str, str]], level: float) -> Iterator[str]:
+    """Whether the claim about at least r hypotheses together was judged right: (m - r + 1) x the r-th smallest p."""
+    found, least = family["success"], part(family["success"], "at_least", int)
+    p = sorted(number(row["p_entered"]) if row["p"] and row["side_agrees"] != "no" else 1.0 for row in rows)
+    joint = min((len(p) - least + 1) * p[least - 1], 1.0)
+    if not agree(part(found, "p", float), joint) or not agree(part(found, "level", float), level):
+        yield f"record.json, family {family['id']!r}, success: recorded {found!r}, recomputed p {joint!r} at {level!r}"
+    if found.get("reached") != (level > 0 and joint <= level * (1 + 1e-12)):
+        yield f"record.json, family {family['id']!r}, success: recorded {found!r}, which p {joint!r} is not"
 
 
 def state_again(row: dict[str, str], rejected: bool, tested: bool) -> str:
