@@ -37,6 +37,7 @@ from beforehand.record.model import (
     Results,
     RowsRecord,
     StudyRecord,
+    SuccessRecord,
 )
 from beforehand.spec.model import Promise
 from beforehand.spec.planned import PlannedFamily, Spec
@@ -153,6 +154,7 @@ def family_record(judged: JudgedFamily) -> FamilyRecord:
         multiples=bool(np.isfinite(judged.factor).all()),
         level=level,
         local_level=None if math.isnan(local) or local == level else local,
+        success=SuccessRecord(**vars(judged.success)) if judged.success else None,
         strong=procedure.strong,
         valid_under=procedure.valid_under,
         no_intervals_because=procedure.no_intervals_because or ("" if family.sure_share else MOVING_LEVEL),

@@ -210,6 +210,20 @@ class RowsRecord:
 
 
 @dataclass(frozen=True, kw_only=True)
+class SuccessRecord:
+    """What a claim about several hypotheses of a family together came to."""
+
+    at_least: int
+    """How many null hypotheses have to be false for the family to succeed."""
+    p: float
+    """The joint p: (m - r + 1) x the r-th smallest p, where a member that can't count enters with p = 1."""
+    level: float
+    """The level at which the family was tested; 0 behind a closed gate."""
+    reached: bool
+    """Whether the joint p meets it."""
+
+
+@dataclass(frozen=True, kw_only=True)
 class FamilyRecord:
     """One family: what was promised, and what came of it."""
 
@@ -240,6 +254,8 @@ class FamilyRecord:
     """The family whose gate stayed closed; "" where the family was tested."""
     states: dict[State, int]
     """How many members are in each state; only states that occur."""
+    success: SuccessRecord | None = None
+    """What success of the family takes and came to; None where it is any rejection."""
     local_level: float | None = None
     """The level at which the family's procedure was run: 0 behind a closed gate; None where it is that of the promise,
     or where each member has its own."""
