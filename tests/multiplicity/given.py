@@ -22,8 +22,9 @@ def options_for(procedure: Procedure) -> dict[str, Any]:
 def given_for(procedure: Procedure, m: int) -> dict[str, Any]:
     """Give unequal weights that sum to 1, a written order other than that of the p-values, and options."""
     parts = [1 + i % 3 for i in range(m)]
+    whole = sum(parts)
     ingredients = {
-        "weights": [part / sum(parts) for part in parts],
+        "weights": [part / whole for part in parts],
         "positions": [(i + m // 2) % m for i in range(m)],
     }
     return {name: ingredients[name] for name in procedure.needs} | options_for(procedure)
