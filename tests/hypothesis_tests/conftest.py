@@ -73,11 +73,12 @@ def _lines(name: str) -> list[dict[str, str]]:
 
 
 def r_cases(test: str) -> Iterator[tuple[str, RCase]]:
-    """Give what base R finds; the script beside the file made it."""
-    samples = _lines("base_r_samples.csv")
-    asked = [name for name in _lines("base_r.csv")[0] if name not in ("quantity", "value")]
+    """Give what base R finds; the scripts beside the files made it."""
+    samples = [*_lines("base_r_samples.csv"), *_lines("base_r_shares_samples.csv")]
+    results = [*_lines("base_r.csv"), *_lines("base_r_shares.csv")]
+    asked = [name for name in results[0] if name not in ("quantity", "value")]
     calls: dict[tuple[str, ...], dict[str, float]] = {}
-    for line in _lines("base_r.csv"):
+    for line in results:
         if line["test"] == test:
             calls.setdefault(tuple(line[name] for name in asked), {})[line["quantity"]] = float(line["value"])
     for call, found in calls.items():
@@ -86,7 +87,10 @@ def r_cases(test: str) -> Iterator[tuple[str, RCase]]:
             np.array([float(s["value"]) for s in samples if (s["case"], s["side"]) == (case, side)])
             for side in ("first", "second")
         ]
-        settings = dict(option.split("=") for option in options.split())
+        settings: dict[str, Any] = {
+            name: {"True": True, "False": False}.get(word, word)
+            for name, word in (option.split("=") for option in options.split())
+        }
         settings |= {"null_value": float(null_value), "alternative": alternative, "confidence": float(confidence)}
         yield " ".join(call), RCase(test, tuple(sides), settings, found)
 
