@@ -188,7 +188,13 @@ def test_a_folder_that_is_no_run_is_named(tmp_path: Path) -> None:
     (tmp_path / "a.run" / "tests.csv").unlink()
     with pytest.raises(FolderFault) as refused:
         read_folder(tmp_path / "a.run")
-    assert str(refused.value).endswith("tests.csv is missing; without it the run can't be read")
+    assert str(refused.value).endswith(
+        "not as manifest-sha256.txt says: tests.csv. `beforehand verify` says what differs."
+    )
+    (tmp_path / "a.run" / "record.json").unlink()
+    with pytest.raises(FolderFault) as refused:
+        read_folder(tmp_path / "a.run")
+    assert str(refused.value).endswith("record.json is missing; without it the run can't be read")
 
 
 def test_a_failed_run_leaves_both_numbers(tmp_path: Path) -> None:

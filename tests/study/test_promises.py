@@ -21,6 +21,7 @@ from beforehand.hypothesis_tests.entries import welch_t as welch
 from beforehand.record.canonical import sha256
 from beforehand.record.manifest import manifest
 from beforehand.report import draw as drawing
+from beforehand.study import verify
 
 
 def beforehand_command(*arguments: str | Path, **surroundings: str) -> subprocess.CompletedProcess[str]:
@@ -165,15 +166,15 @@ def test_verify_holds_for_a_run_as_it_was_written(folder: Path) -> None:
     done = beforehand_command("verify", folder, "--json")
     assert done.returncode == 0, done.stdout
     answers = {check["check"]: check["answer"] for check in json.loads(done.stdout)["checks"]}
-    assert answers == {"checksums": "holds", "arithmetic": "holds", "rerun": "holds", "pages": "holds"}
+    assert answers == dict.fromkeys(("checksums", "parts", "arithmetic", "rerun", "pages"), "holds")
 
 
 def test_verify_says_what_it_could_not_do(folder: Path) -> None:
     (folder.parent / "slabs.csv").unlink()
-    verified = beforehand.study.verify(folder)
+    verified = verify(folder)
     assert verified.holds
     assert [(c.name, c.answer) for c in verified.checks] == [
-        ("checksums", "holds"), ("arithmetic", "holds"), ("rerun", "not done"),
+        ("checksums", "holds"), ("parts", "holds"), ("arithmetic", "holds"), ("rerun", "not done"),
     ]  # fmt: skip
     assert verified.sentence() == "Everything that could be checked holds."
 
@@ -182,7 +183,7 @@ def test_verify_finds_the_data_under_another_root(folder: Path, tmp_path: Path) 
     elsewhere = tmp_path / "archive"
     elsewhere.mkdir()
     (folder.parent / "slabs.csv").rename(elsewhere / "slabs.csv")
-    answers = {check.name: check.answer for check in beforehand.study.verify(folder, data_root=elsewhere).checks}
+    answers = {check.name: check.answer for check in verify(folder, data_root=elsewhere).checks}
     assert answers["rerun"] == "holds"
 
 
@@ -193,6 +194,90 @@ def test_verify_finds_an_altered_page_and_never_runs_the_folders_own_checker(fol
     assert done.returncode == 1
     assert "not as the manifest says: recheck.py, report.html" in done.stdout
     assert done.stdout.splitlines()[-1] == "Something differs from what the run recorded."
+
+
+def forged(folder: Path, name: str, old: str, new: str) -> None:
+    """Alter one file of a run folder, and make the manifest again."""
+    text = (folder / name).read_text("utf-8")
+    assert old in text
+    (folder / name).write_text(text.replace(old, new), "utf-8")
+    (folder / "manifest-sha256.txt").write_bytes(manifest(contents(folder)))
+
+
+def answers_of(folder: Path) -> dict[str, tuple[str, str]]:
+    verified = verify(folder)
+    assert not verified.holds
+    return {check.name: (check.answer, check.detail) for check in verified.checks}
+
+
+def test_verify_finds_a_forged_plan_without_the_data(folder: Path) -> None:
+    (folder.parent / "slabs.csv").unlink()
+    forged(folder, "plan.json", "stronger than plain", "as strong as plain")
+    answers = answers_of(folder)
+    assert answers["checksums"][0] == "holds"
+    assert answers["parts"] == ("differs", "not what record.json gives the checksum of: plan.json")
+
+
+def test_verify_finds_forged_words_even_beside_a_forged_environment(folder: Path) -> None:
+    forged(folder, "record.json", "fibre screed is stronger than plain screed", "fibre screed never cracks")
+    forged(folder, "environment.json", '"numpy": "', '"numpy": "0.')
+    answers = answers_of(folder)
+    assert answers["parts"][0] == "holds"
+    where = "record.json: hypotheses[strength/fibre-plain].claim"
+    assert answers["rerun"] == ("differs", f"in another environment, beyond what that explains: {where}")
+
+
+def test_verify_finds_a_forged_checker(folder: Path) -> None:
+    forged(folder, "recheck.py", "def main", "def main_of_another")
+    assert answers_of(folder)["rerun"] == ("differs", "in the same environment, other bytes: recheck.py")
+
+
+def test_verify_lists_every_check_for_an_altered_table(folder: Path) -> None:
+    forged(folder, "tests.csv", "strength,welch_t,30", "strength,welch_t,31")
+    answers = answers_of(folder)
+    assert answers["parts"] == ("differs", "not what record.json gives the checksum of: tests.csv")
+    assert answers["rerun"][0] == "differs"
+
+
+def test_a_missing_page_is_a_difference_and_the_other_page_is_still_compared(folder: Path) -> None:
+    (folder / "report.pdf").unlink()
+    answers = answers_of(folder)
+    assert answers["checksums"] == ("differs", "not as the manifest says: report.pdf")
+    assert answers["pages"] == ("holds", "drawn again, the same bytes: report.html")
+
+
+def test_verify_agrees_to_the_ninth_digit_in_another_environment(folder: Path) -> None:
+    """The last digit of one number, as another processor might give it, with every checksum made to fit."""
+    forged(folder, "environment.json", '"numpy": "', '"numpy": "0.')
+    table = (folder / "tests.csv").read_text("utf-8").splitlines()
+    cells = table[1].split(",")
+    cells[4] = repr(float(cells[4]) * (1 + 1e-14))
+    old = sha256((folder / "tests.csv").read_bytes())
+    (folder / "tests.csv").write_text("\n".join([table[0], ",".join(cells), *table[2:]]) + "\n", "utf-8")
+    forged(folder, "record.json", old, sha256((folder / "tests.csv").read_bytes()))
+    verified = verify(folder)
+    assert verified.holds
+    rerun = next(check for check in verified.checks if check.name == "rerun")
+    assert rerun.detail == "in another environment: the same words and decisions, numbers agree to 1e-9"
+
+
+def test_an_altered_folder_is_neither_read_nor_reprinted(folder: Path) -> None:
+    (folder / "record.json").write_bytes((folder / "record.json").read_bytes().replace(b"stronger", b"weaker"))
+    with pytest.raises(beforehand.FolderFault, match=r"not as manifest-sha256\.txt says: record\.json"):
+        beforehand.read_run(folder)
+    assert exit_code(["reprint", str(folder), "--out", str(folder.parent / "again")]) == 2
+    assert not (folder.parent / "again").exists()
+
+
+def test_the_next_command_finishes_an_interrupted_move(folder: Path) -> None:
+    folder.rename(folder.parent / f".{folder.name}.new")
+    assert beforehand.read_run(folder).record.study.identifier == "SC-2032-01"
+
+
+def test_a_folder_that_cannot_be_made_is_a_wrong_call(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    spec = write_study(tmp_path)
+    monkeypatch.setattr("beforehand.report.draw.draw", _draws_no_pdf)
+    assert exit_code(["report", str(spec), "--only", "html", "--out", "/proc/x", "--quiet"]) == 2
 
 
 def test_a_swapped_group_is_seen_and_nothing_is_published(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:

@@ -30,16 +30,33 @@ class Written:
     """Why there is no report.pdf although one was asked for; "" otherwise."""
 
 
-def read_folder(folder: Path) -> dict[str, bytes]:
-    """Read every file of a run folder; FolderFault when it isn't one."""
+def open_folder(folder: Path) -> dict[str, bytes]:
+    """Read every file of a run folder as it is; FolderFault when it isn't one. Finishes an interrupted move first."""
+    folder = folder.absolute()
+    if _staged(folder).exists():
+        with _alone(folder.parent):
+            _finish_interrupted(folder)
     if not folder.is_dir():
         raise FolderFault(str(folder), "there is no such folder; give the folder that `beforehand report` wrote")
     if not _is_ours(folder):
         raise FolderFault(str(folder), f"this is not a run folder: it has no {MANIFEST} that lists record.json")
     files = _files(folder)
-    for name in ("record.json", "tests.csv"):
-        if name not in files:
-            raise FolderFault(str(folder), f"{name} is missing; without it the run can't be read")
+    if "record.json" not in files:
+        raise FolderFault(str(folder), "record.json is missing; without it the run can't be read")
+    return files
+
+
+def read_folder(folder: Path) -> dict[str, bytes]:
+    """Read a run folder whose files are as its manifest says; FolderFault names those that are not.
+
+    A page that is missing is no fault: it can be drawn again.
+    """
+    files = open_folder(folder)
+    wrong = [name for name in altered(files) if name in files or not name.startswith("report.")]
+    if wrong:
+        raise FolderFault(
+            str(folder), f"not as {MANIFEST} says: {', '.join(wrong)}. `beforehand verify` says what differs."
+        )
     return files
 
 
@@ -50,6 +67,15 @@ def write_run(folder: Path, files: dict[str, bytes], run: bytes) -> Written:
     already holds a run with the same three checksums nothing is written, except files that are missing.
     """
     folder = folder.absolute()
+    try:
+        return _write_run(folder, files, run)
+    except OSError as refused:
+        raise FolderFault(
+            str(folder), f"the folder can't be written: {refused.strerror}. Nothing is half-written."
+        ) from None
+
+
+def _write_run(folder: Path, files: dict[str, bytes], run: bytes) -> Written:
     folder.parent.mkdir(parents=True, exist_ok=True)
     with _alone(folder.parent):
         _finish_interrupted(folder)

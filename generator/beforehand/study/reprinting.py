@@ -48,7 +48,8 @@ def reprint(folder: Path, out: Path, *, only: tuple[str, ...] = BOTH) -> Reprint
     was = read_run(folder)
     written = was.write(out, only=only)
     now = read_folder(Path(out))
-    differences = environment_differences(was.environment, json.loads(now["environment.json"]))
+    present = json.loads(now["environment.json"])
+    differences = environment_differences({name: was.environment.get(name, "") for name in present}, present)
     pages = [name for name in ("report.html", "report.pdf") if name in now and name in earlier]
     return Reprinted(
         written=written,
