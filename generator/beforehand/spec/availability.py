@@ -33,6 +33,9 @@ KEYS: dict[str, frozenset[str]] = {
     "MissingValues": frozenset({"imputations", "using", "shift"}),
 }  # fmt: skip
 
+TAKEN_LATER: dict[str, tuple[str, ...]] = {"t_contrast": ("covariates",)}
+"""What a test that is built will take of each row beside its outcome, and doesn't yet."""
+
 WORDS: dict[tuple[str, str], tuple[str, ...]] = {
     ("DataSet", "rows_are"): ("features",),
     ("Promise", "criterion"): (

@@ -3,6 +3,7 @@
 from collections.abc import Iterator
 
 from beforehand.hypothesis_tests.beside import BESIDE, Word
+from beforehand.spec.availability import TAKEN_LATER
 from beforehand.spec.checks.blocks import Block
 from beforehand.spec.checks.data_sets import column
 from beforehand.spec.expressions import Known
@@ -24,7 +25,10 @@ def check_beside(block: Block) -> Iterator[Finding]:
         return
     for word in BESIDE:
         written = getattr(block.written, word)
-        if written is not None and word not in block.test.takes:
+        if written is not None and word in TAKEN_LATER.get(block.test.name, ()):
+            told = f"'{word}' for the test '{block.test.name}' is not available yet"
+            yield Finding((*block.path, word), told, at_key=True)
+        elif written is not None and word not in block.test.takes:
             told = f"{block.name} has '{word}', and the test '{block.test.name}' uses no '{word}'. Take it out."
             yield Finding((*block.path, word), told, at_key=True)
         elif written is None and word in block.test.needs:

@@ -1,0 +1,120 @@
+"""Whole studies whose tests take more of a row than its outcome: from the spec to a report that rechecks itself."""
+
+import json
+import subprocess
+import sys
+from pathlib import Path
+from typing import Any
+
+import numpy as np
+import pytest
+from filter_study import GROUPS, column, with_missing, write_filters
+from scipy import stats
+
+import beforehand
+from beforehand.data.dataset import read_data
+from beforehand.data.samples import take, unlabelled
+from beforehand.errors import DataFault
+from beforehand.planning.checking import check
+from beforehand.spec.load import load_spec
+from beforehand.study import report
+
+RATE = f"- {{id: leaks, test: rate_ratio, outcome: leaks, exposure: hours, {GROUPS}, alternative: below}}\n"
+
+
+def reported(folder: Path, hypotheses: str, **how: Any) -> dict[str, Any]:
+    """Run a study to its report, recheck it, and give what it holds."""
+    path = write_filters(folder, hypotheses, **how)
+    report(path, folder / "out", only=("html",))
+    recheck = [sys.executable, "-I", str(folder / "out" / "recheck.py")]
+    done = subprocess.run(recheck, capture_output=True, text=True, check=False)
+    assert done.returncode == 0, done.stdout + done.stderr
+    record, page = ((folder / "out" / name).read_text("utf-8") for name in ("record.json", "report.html"))
+    return {**json.loads(record), "page": page}
+
+
+def row(folder: Path, name: str) -> dict[str, float]:
+    head, *body = [line.split(",") for line in (folder / "out" / "tests.csv").read_text("utf-8").splitlines()]
+    cells = next(dict(zip(head, line, strict=True)) for line in body if line[0] == name)
+    return {key: float(cells[key]) for key in ("estimate", "lower", "upper", "p", "n")}
+
+
+def numbers(name: str, make: str, **how: Any) -> list[float]:
+    return [float(value) for value in column(name, make, **how) if value]
+
+
+def test_a_rate_ratio_from_spec_to_report(tmp_path: Path) -> None:
+    record = reported(tmp_path, RATE)
+    x, y = (sum(numbers("leaks", make)) for make in ("mesh", "felt"))
+    t, u = (sum(numbers("hours", make)) for make in ("mesh", "felt"))
+    found = row(tmp_path, "leaks")
+    assert found["estimate"] == pytest.approx(x / t / (y / u), rel=1e-12)
+    assert found["p"] == pytest.approx(stats.binom(x + y, t / (t + u)).cdf(x), rel=1e-9)
+    (words,) = record["hypotheses"]
+    assert words["outcome"] == "leaks per hours"
+    assert words["beside"] == ["events counted per hours"]
+    assert words["null_in_words"] == "the rate ratio of leaks per hours (mesh over felt) is at least 1"
+    assert [(one["events"], one["exposure"]) for one in words["summaries"]] == [(x, t), (y, u)]
+    for said in ("events counted per hours", "Beside the outcome", "Events and what they were counted in"):
+        assert said in record["page"]
+
+
+def test_a_row_without_an_exposure_is_incomplete(tmp_path: Path) -> None:
+    lines = with_missing((0, "hours"), (1, "leaks"), (3, "hours"), (3, "leaks"))
+    record = reported(tmp_path, RATE, lines=lines)
+    (words,) = record["hypotheses"]
+    assert [(one["group"], one["n"], one["missing"]) for one in words["summaries"]] == [
+        ("mesh", 28, 2),
+        ("felt", 29, 1),
+    ]
+    x, y = sum(numbers("leaks", "mesh", lines=lines)), sum(numbers("leaks", "felt")) - float(column("leaks", "felt")[0])
+    assert [one["events"] for one in words["summaries"]] == [x, y]
+    assert row(tmp_path, "leaks")["n"] == 57
+
+
+def test_one_rate_has_a_unit(tmp_path: Path) -> None:
+    one = "- {id: leaks, test: rate, outcome: leaks, exposure: hours, null_hypothesis: {at_least: 0.02},"
+    record = reported(tmp_path, one + " margin_basis: {text: what the plant allows, source: its rules}}")
+    (words,) = record["hypotheses"]
+    assert (words["unit"], words["null_in_words"]) == (
+        "per hours",
+        "the rate of leaks per hours is at least 0.02\N{NO-BREAK SPACE}per hours",
+    )
+
+
+def fault(tmp_path: Path, hypotheses: str, lines: list[str]) -> str:
+    with pytest.raises(DataFault) as refused:
+        beforehand.run(write_filters(tmp_path, hypotheses, lines=lines))
+    return str(refused.value)
+
+
+def test_an_exposure_of_nothing_is_refused(tmp_path: Path) -> None:
+    lines = with_missing()
+    lines[5] = lines[5].replace(f",{column('hours', 'felt')[2]},", ",0,")
+    assert fault(tmp_path, RATE, lines) == (
+        "filters.csv: 1 fault\n"
+        "  line 6: hypothesis 'leaks' takes 'hours' as its exposure, which is above 0; it is not on line 6. Correct "
+        "the file, or leave such rows out by 'where' or 'exclude'."
+    )
+
+
+def test_no_missing_value_is_allowed_under_fail(tmp_path: Path) -> None:
+    strict = RATE.replace("outcome: leaks,", "outcome: leaks, missing_values: {method: fail},")
+    assert fault(tmp_path, strict, with_missing((0, "hours"), (1, "leaks"))) == (
+        "filters.csv: 2 faults\n"
+        "  line 2: hypothesis 'leaks' allows no missing 'hours' (method: fail); it is missing on line 2.\n"
+        "  line 3: hypothesis 'leaks' allows no missing outcome (method: fail); it is missing on line 3."
+    )
+
+
+def test_check_knows_the_smallest_p_without_joining_outcomes_and_groups(tmp_path: Path) -> None:
+    spec = load_spec(write_filters(tmp_path, RATE))
+    (planned,) = check(spec).hypotheses
+    m = sum(numbers("leaks", "mesh")) + sum(numbers("leaks", "felt"))
+    t, u = (sum(numbers("hours", make)) for make in ("mesh", "felt"))
+    assert planned.smallest_p == pytest.approx(
+        2 * (u / (t + u)) ** m, rel=1e-9
+    )  # doubled: a level shared by both sides
+    dataset = read_data(spec)
+    known, taken = unlabelled(dataset, spec.hypotheses[0]), take(dataset, spec.hypotheses[0])
+    np.testing.assert_array_equal(known.pooled, np.sort(np.concatenate(taken.arrays)))

@@ -1,0 +1,75 @@
+"""Faults of the keys that hand a test more of a row than its outcome, as whole messages."""
+
+from pathlib import Path
+
+import pytest
+from filter_study import GROUPS, HEAD
+
+from beforehand.errors import SpecFault
+from beforehand.spec.load import read_spec
+
+RATE = f"- {{id: leaks, test: rate_ratio, outcome: leaks, exposure: hours, {GROUPS}, alternative: below}}"
+WELCH = f"- {{id: flow, test: welch_t, outcome: flow, {GROUPS}, alternative: above}}"
+LINE = HEAD.count("\n") + 1
+
+
+def message(hypothesis: str) -> str:
+    with pytest.raises(SpecFault) as caught:
+        read_spec(f"{HEAD}      {hypothesis}\n".encode(), Path("filters.yaml"))
+    return "\n".join(fault.text for fault in caught.value.faults)
+
+
+@pytest.mark.parametrize(
+    ("hypothesis", "said"),
+    [
+        (
+            WELCH.replace("outcome", "exposure: hours, outcome"),
+            "hypothesis 'flow' has 'exposure', and the test 'welch_t' uses no 'exposure'. Take it out.",
+        ),
+        (
+            WELCH.replace("outcome", "strata: [line], covariates: [before], outcome"),
+            "hypothesis 'flow' has 'strata', and the test 'welch_t' uses no 'strata'. Take it out.\n"
+            "hypothesis 'flow' has 'covariates', and the test 'welch_t' uses no 'covariates'. Take it out.",
+        ),
+        (
+            WELCH.replace("outcome", "time: {column: days, event: {column: state, values: [burst]}}, outcome"),
+            "hypothesis 'flow' has 'time', and the test 'welch_t' uses no 'time'. Take it out.",
+        ),
+        (
+            RATE.replace(" exposure: hours,", ""),
+            "hypothesis 'leaks' needs the key 'exposure': the column that holds for how long, or over how much, the "
+            "events of a row were counted.",
+        ),
+        (
+            RATE.replace("hours", "hour"),
+            "hypothesis 'leaks' names the column 'hour', which is not declared. The nearest is 'hours'.",
+        ),
+        (
+            RATE.replace("hours", "water"),
+            "hypothesis 'leaks' needs a number or a count where column 'water' stands, which is a category.",
+        ),
+        (
+            RATE.replace("hours", "leaks"),
+            "hypothesis 'leaks' has the column 'leaks' twice: here and as its 'outcome'.",
+        ),
+        (
+            RATE.replace("outcome: leaks", "outcome: flow"),
+            "hypothesis 'leaks' needs counts, and column 'flow' is not declared as {kind: count}: whole numbers from 0 "
+            "on, of a column of the file.",
+        ),
+    ],
+)
+def test_message(hypothesis: str, said: str) -> None:
+    assert message(hypothesis) == said
+
+
+def test_sound() -> None:
+    spec = read_spec(f"{HEAD}      {RATE}\n".encode(), Path("filters.yaml"))
+    assert spec.hypotheses[0].exposure == "hours"
+
+
+def test_a_fault_stands_at_its_key() -> None:
+    with pytest.raises(SpecFault) as caught:
+        read_spec(f"{HEAD}      {WELCH.replace('outcome', 'exposure: hours, outcome')}\n".encode(), Path("x.yaml"))
+    (fault,) = caught.value.faults
+    assert (fault.line, fault.column) == (LINE, 7 + WELCH.index("outcome"))
