@@ -17,6 +17,7 @@ from beforehand.analysis.families import (
     order_of,
     scheme_of,
 )
+from beforehand.analysis.graphs import graph_drawn
 from beforehand.analysis.ingredients import measured, measured_again
 from beforehand.analysis.matching import with_simultaneous
 from beforehand.analysis.records import (
@@ -89,7 +90,13 @@ def analyse(spec: Spec, dataset: Dataset, *, progress: Callable[[str], None] = l
         unneeded_answers=warned.unneeded_answers,
         agreement=agreement.settle(),
         methods=method_records(judged, tuple(computed.values())),
-        drawn=drawn(families, hypotheses, table),
+        drawn=drawn(
+            families,
+            hypotheses,
+            table,
+            thresholds={name: threshold for one in judged for name, threshold in one.thresholds_by_id.items()},
+            graph=graph_drawn(spec, judged, {one.id: one for one in hypotheses}),
+        ),
         plan_sha256=sha256(spec.plan),
         particulars_sha256=sha256(spec.particulars),
         data_sha256=sha256(checksum_lines({file.file: file.sha256 for file in inputs})),

@@ -15,15 +15,21 @@ POINTS = 400
 
 
 def drawn(
-    families: tuple[FamilyRecord, ...], hypotheses: tuple[HypothesisRecord, ...], results: Results
+    families: tuple[FamilyRecord, ...],
+    hypotheses: tuple[HypothesisRecord, ...],
+    results: Results,
+    *,
+    thresholds: dict[str, float],
+    graph: dict[str, Any] | None,
 ) -> dict[str, Any]:
-    """Collect what each figure draws."""
+    """Collect what each figure draws; ``thresholds`` are those of the p-values, by hypothesis."""
     place = {name: index for index, name in enumerate(results.id)}
     words = {hypothesis.id: hypothesis for hypothesis in hypotheses}
     return {
         "estimates": {f.id: [_estimate(words[i], results.row(place[i])) for i in f.members] for f in families},
-        "staircase": {f.id: _staircase(f, words, results, place) for f in families},
+        "staircase": {f.id: _staircase(f, words, results, place, thresholds) for f in families},
         "error_by_m": _error_by_m(families),
+        **({"graph": graph} if graph else {}),
     }
 
 
@@ -51,7 +57,11 @@ def _drawable(value: float) -> float | str | None:
 
 
 def _staircase(
-    family: FamilyRecord, words: dict[str, HypothesisRecord], results: Results, place: dict[str, int]
+    family: FamilyRecord,
+    words: dict[str, HypothesisRecord],
+    results: Results,
+    place: dict[str, int],
+    thresholds: dict[str, float],
 ) -> dict[str, Any]:
     rows = sorted((results.row(place[member]) for member in family.members), key=lambda row: row["rank"])
     points = [
@@ -60,7 +70,7 @@ def _staircase(
             "label": words[row["id"]].label,
             "rank": row["rank"],
             "p": row["p_entered"],
-            "threshold": family.level / row["factor"],
+            "threshold": thresholds[row["id"]] if thresholds[row["id"]] > 0 else None,
             "state": row["state"],
         }
         for row in rows

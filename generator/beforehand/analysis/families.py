@@ -101,6 +101,12 @@ class JudgedFamily:
     success: Success | None
     """What its claim about several hypotheses together came to; None where any rejection is a success."""
 
+    @property
+    def thresholds_by_id(self) -> dict[str, float]:
+        """The thresholds of its members, by their ids; NaN where there is none."""
+        members = self.entered.family.members
+        return {member.id: float(value) for member, value in zip(members, self.thresholds, strict=True)}
+
 
 def scheme_of(spec: Spec) -> AcrossFamilies:
     """Name the scheme; a single family is a series of one."""

@@ -79,6 +79,8 @@ class Walked:
     """A graph with its walk, and how far the walk comes at the level of the study."""
 
     nodes: tuple[str, ...]
+    p: Vector
+    """Shape (n,): of each node; of a family, the smallest level at which all of it is rejected."""
     before: Graph
     walk: Walk
     level: float
@@ -113,7 +115,14 @@ def walk_over(families: Families, *, nodes_are: NodesAre, start: Mapping[str, fl
     left = [node for node in walked.order[:steps] if passing[node]]
     staying = tuple(node for node in range(len(nodes)) if node not in left)
     return Walked(
-        nodes=nodes, before=before, walk=walked, level=level, steps=steps, staying=staying, after=before.without(left)
+        nodes=nodes,
+        p=p,
+        before=before,
+        walk=walked,
+        level=level,
+        steps=steps,
+        staying=staying,
+        after=before.without(left),
     )
 
 

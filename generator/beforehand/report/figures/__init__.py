@@ -4,7 +4,7 @@ from collections.abc import Callable, Iterable
 from typing import Any
 
 from beforehand.record.model import Record
-from beforehand.report.figures import error_by_m, estimates, staircase
+from beforehand.report.figures import error_by_m, estimates, graph, staircase
 from beforehand.report.figures.model import Figure
 
 __all__ = ["Figure", "draw_figures"]
@@ -12,6 +12,7 @@ __all__ = ["Figure", "draw_figures"]
 FIGURES: dict[str, Callable[[Any], Iterable[Figure]]] = {
     "error_by_m": error_by_m.draw,
     "estimates": estimates.draw,
+    "graph": graph.draw,
     "staircase": staircase.draw,
 }
 
