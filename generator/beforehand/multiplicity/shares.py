@@ -1,9 +1,9 @@
 """What the plan gives each hypothesis of a family: its share of the level, and its place in a written order."""
 
 import math
-from typing import Any
 
 import numpy as np
+from numpy.typing import NDArray
 
 from beforehand.multiplicity.contract import Ascending, Ranks, Vector
 
@@ -25,7 +25,7 @@ def shares_of(weights: Vector) -> Vector:
     return weights / math.fsum(weights)  # exact, so that the order in which they come changes no digit
 
 
-def order_of(positions: "np.ndarray[Any, np.dtype[Any]]") -> Ranks:
+def order_of(positions: NDArray[np.int64]) -> Ranks:
     """Give the hypotheses in the written order, first to last.
 
     Raises

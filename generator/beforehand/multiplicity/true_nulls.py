@@ -4,6 +4,7 @@ from functools import lru_cache
 from typing import Literal
 
 import numpy as np
+from numpy.typing import NDArray
 from scipy.optimize import brentq
 
 from beforehand.multiplicity.contract import Ascending, Vector
@@ -55,7 +56,7 @@ def share_of_true_nulls(p: Ascending, by: Way) -> float:
     return float(np.clip(estimate, 1 / m, 1.0))
 
 
-def _least_error(beyond: "np.ndarray[tuple[int], np.dtype[np.intp]]", shares: Vector, m: int) -> float:
+def _least_error(beyond: NDArray[np.intp], shares: Vector, m: int) -> float:
     """Choose the point with the smallest variance plus squared distance from the tenth percentile of the shares."""
     variance = beyond / (m * (1 - POINTS)) ** 2 * (1 - beyond / m)
     error = variance + (shares - np.quantile(shares, 0.1)) ** 2

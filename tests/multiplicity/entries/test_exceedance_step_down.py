@@ -23,7 +23,7 @@ def test_reference(entry: Any) -> None:
 
 @pytest.mark.parametrize(("m", "share", "terms"), [(15, 0.1, 2), (100, 0.1, 11), (9, 0.1, 1), (100, 0.29, 30)])
 def test_the_price_of_any_dependence(m: int, share: float, terms: int) -> None:
-    # 1 + 1/2 + ... + 1/(floor(g m) + 1), Lehmann & Romano (2005), theorem 3.3; from memory
+    # 1 + 1/2 + ... + 1/(floor(g m) + 1), Lehmann & Romano (2005; from memory)
     p = np.random.default_rng(m).random(m) ** 4
     dear, cheap = (exceedance_step_down.steps(p, false_share=share, dependence=d) for d in ("any", "independence"))
     price = float(sum(Fraction(1, j) for j in range(1, terms + 1)))

@@ -80,6 +80,6 @@ def test_the_arithmetic_in_words() -> None:
     steps = hommel.steps(p)
     assert steps.factor[0] == 9
     assert steps.arithmetic[0] == ""
-    assert steps.arithmetic[1] == "7 × 0.0301 / 4, Simes p of the 7 largest"
+    assert steps.arithmetic[1] == "Simes p of the 7 largest: 7 × 0.0301 / 4"
     assert steps.product[1] == pytest.approx(7 * 0.0301 / 4, rel=1e-15)
-    assert steps.arithmetic[4] == "4 × 0.048 / 2, Simes p of the 4 largest"
+    assert steps.arithmetic[4] == "Simes p of the 4 largest: 4 × 0.048 / 2"

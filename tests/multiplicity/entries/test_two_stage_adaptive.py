@@ -69,8 +69,8 @@ def test_the_arithmetic_in_words() -> None:
     # of 10 the first 9 have 0.009 x 10/9 = 0.01 at stage 1: they fall at t = 0.01, where stage 2 has the level 10 t;
     # that is enough for 0.06, and for 0.5 from t = 0.05 on
     for last, words, t in (
-        (0.06, "t / (1 − t) with t = 0.01, at which stage 1 rejects 9", 0.01),
-        (0.5, "t / (1 − t) with t = 0.5 × 1/10", 0.05),
+        (0.06, "t = 0.01, from which stage 1 rejects 9; t / (1 − t)", 0.01),
+        (0.5, "t = 0.5 × 1/10; t / (1 − t)", 0.05),
     ):
         steps = two_stage_adaptive.steps([*[0.009] * 9, last])
         assert steps.arithmetic[9] == words

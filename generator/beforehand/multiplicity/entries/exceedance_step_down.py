@@ -12,10 +12,7 @@ from beforehand.multiplicity.contract import WHOLE, Ascending, Steps, procedure,
     title="Lehmann-Romano step-down for the share of false rejections",
     controls="false_discovery_exceedance",
     strong=True,
-    valid_under=(
-        "any dependence; with dependence: independence, independence or positive dependence under which Simes' "
-        "inequality holds for the true nulls"
-    ),
+    valid_under="any dependence; with the option dependence: independence, independence",
     intervals=None,
     no_intervals_because=(
         "No simultaneous intervals that match these decisions are in general use, so only the unadjusted interval is "
@@ -30,10 +27,9 @@ def exceedance_step_down(
     """Adjust p-values by the step-down procedure for the probability that too large a share of rejections is false.
 
     Keeps the probability that more than the share g of the rejections are false strongly at the level: under any
-    dependence with the thresholds divided by 1 + 1/2 + ... + 1/(floor(g m) + 1) (Lehmann & Romano 2005, theorem 3.3),
-    and without that factor where the true nulls are independent of the other p-values or Simes' inequality holds for
-    them (theorems 3.1 and 3.2). Other than a false discovery rate this is a promise about the list at hand, not about
-    the average list. With g = 0 it is Holm's procedure.
+    dependence with the thresholds divided by 1 + 1/2 + ... + 1/(floor(g m) + 1), and without that factor under
+    independence or somewhat milder conditions (Lehmann & Romano 2005). Other than a false discovery rate this is a
+    promise about the list at hand, not about the average list. With g = 0 it is Holm's procedure.
 
     Parameters
     ----------

@@ -70,7 +70,7 @@ def hommel(p: Ascending) -> Steps:
 
     def simes(rank: int) -> str:
         j, taken = size[rank], sets.rank[size[rank] - 1]
-        return f"{j} × {exact(p[taken])} / {taken + 1 - (m - j)}, Simes p of the {j} largest"
+        return f"Simes p of the {j} largest: {j} × {exact(p[taken])} / {taken + 1 - (m - j)}"
 
     return Steps.of(
         factor=factor,

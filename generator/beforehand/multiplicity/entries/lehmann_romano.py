@@ -22,8 +22,8 @@ def lehmann_romano(p: Ascending, *, false_rejections: int) -> Steps:
     """Adjust p-values by the step-down procedure that allows fewer than k false rejections.
 
     Keeps the probability of k or more false rejections strongly at the level, under any dependence (Lehmann & Romano
-    2005, theorem 2.2). With k = 1 it is Holm's procedure. The promise says nothing about a single rejection: up to
-    k - 1 of them may be false.
+    2005). With k = 1 it is Holm's procedure. The promise says nothing about a single rejection: up to k - 1 of them may
+    be false.
 
     Parameters
     ----------

@@ -36,9 +36,9 @@ def storey_q(p: Ascending, *, null_share: Way = "smoother") -> Steps:
 
     Keeps the false discovery rate asymptotically, for many hypotheses that are independent or weakly dependent (Storey,
     Taylor & Siegmund 2004); below about a hundred the estimate is too uncertain for a promise. ``from_half`` keeps it
-    for any number of independent hypotheses, and rejects none with p above 0.5 (theorem 3 there); its estimate can
-    be above 1, and then asks for more than Benjamini and Hochberg's procedure. A q-value can be
-    smaller than p; and because the share is estimated, raising one p can lower the q-value of another.
+    for any number of independent hypotheses: it rejects none with p above 0.5, and its estimate can be above 1, where
+    it asks for more than Benjamini and Hochberg's procedure. A q-value can be smaller than p; and because the share is
+    estimated, raising one p can lower the q-value of another.
 
     Parameters
     ----------

@@ -65,8 +65,8 @@ def two_stage_adaptive(p: Ascending) -> Steps:
 
     def words(rank: int) -> str:
         if between[rank] <= at_a_step[rank]:
-            return f"t / (1 − t) with t = {exact(a[rank])} × {m - k[rank] + 1}/{m}"
-        return f"t / (1 − t) with t = {exact(t[rank])}, at which stage 1 rejects {k[rank]}"
+            return f"t = {exact(a[rank])} × {m - k[rank] + 1}/{m}; t / (1 − t)"
+        return f"t = {exact(t[rank])}, from which stage 1 rejects {k[rank]}; t / (1 − t)"
 
     factor = np.full(m, np.nan)
     return Steps.of(
