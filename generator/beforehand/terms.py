@@ -36,7 +36,7 @@ Scope = Literal["hypothesis", "family", "study"]
 EvidenceFrom = Literal["record", "pattern"]
 
 # How the values of a test reach it, and on which scale its estimate lives.
-Design = Literal["one_sample", "two_groups", "pairs", "association", "supplied"]
+Design = Literal["one_sample", "two_groups", "contrast", "pairs", "association", "supplied"]
 OutcomeKind = Literal["number", "count", "event", "supplied"]
 Scale = Literal["difference", "ratio", "location", "correlation", "supplied"]
 
@@ -73,7 +73,7 @@ WARNING_NAMES: tuple[str, ...] = (
 
 STATE_WORDS: dict[State, str] = {
     "rejected": "rejected",
-    "rejected_against_claim": "rejected, against the claim",
+    "rejected_against_claim": "rejected against the claim",
     "not_rejected": "not rejected",
     "not_tested": "not tested",
     "no_result": "no result",

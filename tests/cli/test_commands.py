@@ -177,3 +177,15 @@ def test_a_defect_is_ours_and_says_how_to_report_it(
     monkeypatch.setattr("tempfile.tempdir", str(tmp_path))
     assert exit_code(["report", str(write_study(tmp_path))]) == 3
     assert "This is a defect of beforehand" in capsys.readouterr().err
+
+
+def test_draft_leaves_a_foreign_schema_file_alone(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    (tmp_path / "beforehand.schema.json").write_text('{"mine": 1}', "utf-8")
+    assert exit_code(["draft", "--out", str(tmp_path / "spec.yaml")]) == 2
+    assert "this file exists already and is no schema of beforehand" in capsys.readouterr().err
+    assert (tmp_path / "beforehand.schema.json").read_text("utf-8") == '{"mine": 1}'
+    assert not (tmp_path / "spec.yaml").exists()
+    (tmp_path / "beforehand.schema.json").unlink()
+    assert exit_code(["draft", "--out", str(tmp_path / "spec.yaml")]) == 0
+    (tmp_path / "spec.yaml").unlink()
+    assert exit_code(["draft", "--out", str(tmp_path / "spec.yaml")]) == 0  # over a schema of our own

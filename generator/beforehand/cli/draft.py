@@ -26,13 +26,23 @@ def draft(data: Path | None, out: Path | None) -> int:
         raise CallFault(str(out), "this file exists already and is left as it is; name another one with --out")
     if not out.parent.is_dir():
         raise CallFault(str(out), "there is no such folder to write it in")
-    text = drafted(None if data is None else _below(data, out.parent), folder=out.parent)
+    schema_file = out.parent / "beforehand.schema.json"
     schema = json.dumps(json_schema(), indent=1, ensure_ascii=False) + "\n"
+    if schema_file.exists() and not _is_a_schema(schema_file):
+        raise CallFault(str(schema_file), "this file exists already and is no schema of beforehand; move it first")
+    text = drafted(None if data is None else _below(data, out.parent), folder=out.parent)
     out.write_text(text, "utf-8")
-    (out.parent / "beforehand.schema.json").write_text(schema, "utf-8")
+    schema_file.write_text(schema, "utf-8")
     click.echo(f"Wrote {out.name} and beforehand.schema.json in {out.parent}.")
     click.echo(f"What is left to write, line by line: beforehand check {out.name}")
     return 0
+
+
+def _is_a_schema(path: Path) -> bool:
+    """Whether a file is a schema that some version of beforehand wrote, which may be written anew."""
+    from beforehand.spec.schema import json_schema
+
+    return f'"title": "{json_schema()["title"]}"' in path.read_text("utf-8", errors="replace")
 
 
 def _below(data: Path, folder: Path) -> Path:

@@ -20,6 +20,7 @@ from beforehand.terms import (
     EvidenceFrom,
     Intent,
     LevelIs,
+    NullForm,
     OutcomeKind,
     Scale,
     Scope,
@@ -244,6 +245,8 @@ class FamilyRecord:
     strong: bool
     valid_under: str
     no_intervals_because: str
+    joint_intervals: bool = False
+    """Whether the level of the simultaneous intervals is that of all of them together, not of each."""
     planned: int
     """m as planned."""
     computed: int
@@ -295,8 +298,9 @@ class HypothesisRecord:
     null_in_words: str
     alternative_in_words: str
     side: Alternative
-    """Which side the test looks at, about first − second (or first / second)."""
+    """Which side is judged, about first − second (or first / second): under a one-sided level the side of the claim."""
     claim_direction: ClaimDirection | None
+    null_form: NullForm = "at"
     null_values: tuple[float, ...]
     """The value, or the two margins, of the null."""
     test: str

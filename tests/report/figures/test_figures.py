@@ -75,7 +75,7 @@ def test_the_numbers_behind_estimates_are_those_drawn() -> None:
     assert [text.replace("\u00a0", " ") for text in figure.table[1]] == [
         "drill − hand",
         "−2.5 d",
-        "−4 to ∞",
+        "−4.0 to ∞",
         "–",
         "rejected",
     ]

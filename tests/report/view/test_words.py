@@ -39,7 +39,7 @@ def test_every_state_has_a_sentence(make: Make, plan: Any, state: State) -> None
 @pytest.mark.parametrize(
     ("state", "lead", "part"),
     [
-        ("rejected", "Shown:", "Drill 1 − hand: emergence is slower."),
+        ("rejected", "Shown:", "drill 1 − hand: emergence is slower."),
         ("rejected_against_claim", "Against the claim:", "a finding against the claim"),
         ("not_rejected", "Not shown:", "Nor is the contrary shown."),
         ("not_tested", "Not tested:", "No claim is made"),
@@ -153,3 +153,18 @@ def test_characters_without_a_glyph_are_named(make: Make, plan: Any) -> None:
         "The fonts of this report lack 1 of the characters in the study's texts; they are shown by their codes: U+51B7."
     )
     assert not any("lack" in text for text in view(record, ()).methods.spelling)
+
+
+def test_an_interval_on_the_other_side_is_said(make: Make, plan: Any) -> None:
+    """A one-sided test that could only show "below" says so when its interval lies wholly above the null value."""
+    beyond = {"estimate": [1.25], "lower": [0.45], "upper": [2.05], "state": ["not_rejected"]}
+    (line,) = lines_of(make(plan(id="one", p=[0.99], changes=beyond)))
+    assert finding(line).text.endswith("The interval lies wholly on the other side of the null value.")
+    around = beyond | {"lower": [-0.45]}
+    (line,) = lines_of(make(plan(id="one", p=[0.99], changes=around)))
+    assert finding(line).text.endswith("Nor is the contrary shown.")
+
+
+def test_a_claim_is_quoted_as_it_is_written(make: Make, plan: Any) -> None:
+    (line,) = lines_of(make(plan(id="one", p=[0.01], claim="pH rises")))
+    assert finding(line).text == "pH rises."

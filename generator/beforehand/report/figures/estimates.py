@@ -1,5 +1,6 @@
 """Estimates of one family with their intervals, each beside its name; ratios on a logarithmic axis."""
 
+import math
 from collections.abc import Iterable, Mapping
 from typing import TYPE_CHECKING, TypedDict
 
@@ -17,7 +18,7 @@ from beforehand.report.figures.canvas import (
     put_marks,
 )
 from beforehand.report.figures.model import Figure
-from beforehand.spelling import NOTHING, between, decimal, percent, short, with_unit
+from beforehand.spelling import NOTHING, between, decimal, decimals_for, percent, ratio, short, with_unit
 from beforehand.terms import STATE_WORDS, Scale, State
 
 if TYPE_CHECKING:
@@ -49,7 +50,8 @@ class Estimate(TypedDict):
     estimates: str
     unit: str
     state: State
-    interval_level: float
+    interval_level: float | None
+    """None where the interval was supplied."""
 
 
 Panel = list[Estimate]
@@ -182,27 +184,35 @@ def _limits(panel: Panel) -> tuple[float, float]:
 _HEAD = ("Hypothesis", "Estimate", "Unadjusted interval", "Simultaneous interval", "State")
 
 
-def _written(end: End) -> str:
-    if isinstance(end, str):
-        return decimal(float(end), 0)
-    return NOTHING if end is None else short(end)
+def _number(end: End) -> float:
+    return math.nan if end is None else float(end)
 
 
 def _row(one: Estimate) -> tuple[str, ...]:
+    """Write the numbers as the tables of the report write them: as fine as the interval is narrow."""
+    ends = (one["estimate"], one["lower"], one["upper"], one["matching_lower"], one["matching_upper"])
+    values = [_number(end) for end in ends]
+    nulls = tuple(one["null_values"])
+    if one["scale"] == "ratio":
+        texts = [NOTHING if math.isnan(value) else ratio(value, nulls) for value in values]
+    else:
+        decimals = decimals_for(values[1], values[2], values[0], nulls)
+        texts = [decimal(value, decimals) for value in values]
+    estimate, lower, upper, matching_lower, matching_upper = texts
     return (
         one["label"],
-        with_unit(_written(one["estimate"]), one["unit"]),
-        between(_written(one["lower"]), _written(one["upper"])),
-        between(_written(one["matching_lower"]), _written(one["matching_upper"])),
+        with_unit(estimate, one["unit"]),
+        between(lower, upper),
+        between(matching_lower, matching_upper),
         STATE_WORDS[one["state"]],
     )
 
 
 def _key(shown: list[Estimate]) -> str:
-    levels = {percent(one["interval_level"]) for one in shown}
-    level = f" ({levels.pop()})" if len(levels) == 1 else ""
+    levels = {percent(level) for one in shown if (level := one["interval_level"]) is not None}
+    said = f" ({', '.join(sorted(levels))})" if levels else " (as supplied)"
     thin = "; thin line below it: simultaneous interval" if _has_matching(shown) else ""
-    return f"Thick line: unadjusted interval{level}{thin}; {legend_words([one['state'] for one in shown])}"
+    return f"Thick line: unadjusted interval{said}{thin}; {legend_words([one['state'] for one in shown])}"
 
 
 def _told(family: str, shown: list[Estimate]) -> str:
@@ -212,5 +222,5 @@ def _told(family: str, shown: list[Estimate]) -> str:
 
 
 def _sentence(one: Estimate) -> str:
-    label, estimate, ends, _, state = _row(one)
-    return f"{label}: {estimate}, {ends}, {state}."
+    label, estimate, interval, _, state = _row(one)
+    return f"{label}: {estimate}, {interval}, {state}."

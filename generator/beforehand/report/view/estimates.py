@@ -30,6 +30,10 @@ def estimates_table(lines: tuple[Line, ...]) -> Table:
     for head, column in (*_sizes(lines), _estimate(numbers)):
         first.append(head)
         cells.append(column)
+    if _several_levels(lines):
+        first.append(Head(text="Level of the unadjusted interval", rows="2", style="number"))
+        each = (line.number("interval_level") for line in lines)
+        cells.append(tables.plain((NOTHING if math.isnan(one) else percent(one) for one in each), "number"))
     second: list[Head] = []
     for name, lower, upper in _intervals(lines, numbers):
         first.append(Head(text=name, columns="2", scope="colgroup", style="group"))
@@ -81,13 +85,25 @@ def _level(lines: tuple[Line, ...], column: str) -> str:
     return levels.pop() if len(levels) == 1 else ""
 
 
+def _levels(lines: tuple[Line, ...]) -> str:
+    level = _level(lines, "interval_level")
+    if level:
+        return f", {level}"
+    return "" if _several_levels(lines) else ", as supplied"
+
+
+def _several_levels(lines: tuple[Line, ...]) -> bool:
+    return len({level for line in lines if not math.isnan(level := line.number("interval_level"))}) > 1
+
+
 def _intervals(lines: tuple[Line, ...], numbers: tuple[Written, ...]) -> Iterable[tuple[str, list[str], list[str]]]:
     lower, upper = [one.lower for one in numbers], [one.upper for one in numbers]
-    yield f"Unadjusted interval, {_level(lines, 'interval_level') or 'level in the appendix'}", lower, upper
+    yield f"Unadjusted interval{_levels(lines)}", lower, upper
     if _has_matching(lines):
         lower, upper = [one.matching_lower for one in numbers], [one.matching_upper for one in numbers]
         level = _level(lines, "matching_level")
-        yield f"Simultaneous interval{f', {level} each' if level else ''}", lower, upper
+        kind = "together" if lines[0].family.joint_intervals else "each"
+        yield f"Simultaneous interval{f', {level} {kind}' if level else ''}", lower, upper
 
 
 def _has_matching(lines: tuple[Line, ...]) -> bool:

@@ -2,6 +2,7 @@
 
 import math
 from collections.abc import Callable
+from dataclasses import replace
 
 from beforehand.record.model import GroupSummary
 from beforehand.report.view import tables
@@ -10,6 +11,7 @@ from beforehand.report.view.model import Cell, Head, Row, Table
 from beforehand.spelling import NOTHING, THIN, decimal, integer, number
 
 NAMED = 2
+PAIRS = "Of pairs, the column Missing counts those that lack at least one of their two values, on both sides alike."
 
 Summaries = dict[tuple[str, GroupSummary], list[str]]
 """Outcome and summary of a group, with the labels of the hypotheses that use it."""
@@ -33,7 +35,8 @@ def group_tables(lines: tuple[Line, ...]) -> tuple[Table, ...]:
             found = numbers if one.events is None else events if one.exposure is None else rates
             found.setdefault((line.hypothesis.outcome, one), []).append(line.label)
     tables_found = (_numbers(numbers, len(lines)), _events(events, len(lines)), _rates(rates, len(lines)))
-    return tuple(table for table in tables_found if table.rows)
+    notes = (PAIRS,) if any(line.hypothesis.design == "pairs" for line in lines) else ()
+    return tuple(replace(table, notes=notes) for table in tables_found if table.rows)
 
 
 def _numbers(found: Summaries, of_all: int) -> Table:

@@ -6,7 +6,7 @@ from dataclasses import dataclass
 from typing import Any
 
 from beforehand.record.model import FamilyRecord, HypothesisRecord, Record
-from beforehand.terms import Intent, State
+from beforehand.terms import AcrossFamilies, Intent, State
 
 # How many hypotheses of one family the sections show in full; all of them stand in the appendix.
 IN_FULL = 20
@@ -30,6 +30,8 @@ class Line:
     family: FamilyRecord
     intent: Intent
     values: dict[str, Any]
+    scheme: AcrossFamilies
+    """How its family shares a level with others: separate, where it stands apart."""
 
     @property
     def id(self) -> str:
@@ -71,7 +73,13 @@ def lines_of(record: Record) -> tuple[Line, ...]:
     families = {family.id: family for family in record.families}
     places = {name: at for at, name in enumerate(record.results.id)}
     return tuple(
-        Line(one, families[one.family], record.study.intent, record.results.row(places[one.id]))
+        Line(
+            one,
+            families[one.family],
+            record.study.intent,
+            record.results.row(places[one.id]),
+            record.scheme if families[one.family].under_study_promise else "separate",
+        )
         for one in record.hypotheses
     )
 

@@ -4,7 +4,7 @@ from collections.abc import Callable
 
 from beforehand.record.model import FamilyRecord, HypothesisRecord, Record
 from beforehand.report.figures.model import Figure
-from beforehand.report.view import criteria, tables
+from beforehand.report.view import criteria, schemes, tables
 from beforehand.report.view.headings import HEADINGS, section
 from beforehand.report.view.lines import IN_FULL, Line
 from beforehand.report.view.model import Cell, Drawing, Fact, Promised, PromisedFamily, Row, Table, drawing
@@ -41,7 +41,7 @@ def promised(record: Record, lines: tuple[Line, ...], figures: tuple[Figure, ...
 
 
 def _drawings(figures: tuple[Figure, ...]) -> tuple[Drawing, ...]:
-    return tuple(drawing(figure) for figure in figures if figure.key == "error_by_m")
+    return tuple(drawing(figure) for figure in figures if figure.key in ("error_by_m", "graph"))
 
 
 def _members(family: FamilyRecord, lines: tuple[Line, ...]) -> tuple[Line, ...]:
@@ -51,7 +51,7 @@ def _members(family: FamilyRecord, lines: tuple[Line, ...]) -> tuple[Line, ...]:
 def _sentences(record: Record) -> tuple[str, ...]:
     found = list(criteria.promises(record))
     if len(record.families) > 1:
-        found.append(criteria.SCHEMES[record.scheme])
+        found.append(schemes.sentence(record))
     if record.scheme == "separate" and len(record.families) > 1 and all(map(_is_familywise, record.families)):
         total = min(1.0, sum(family.level for family in record.families))
         found.append(f"The chance of a false rejection in any of the families can reach {percent(total)}.")
@@ -72,13 +72,7 @@ def _chain(record: Record) -> tuple[Fact, ...]:
         return ()
     families = {family.id: family for family in record.families}
     order = record.order or tuple(one.id for one in record.families if one.under_study_promise)
-    return tuple(Fact(name, _gate(families[name])) for name in order)
-
-
-def _gate(family: FamilyRecord) -> str:
-    if family.tested:
-        return "tested"
-    return f"not tested: the gate of {family.closed_by} stayed closed" if family.closed_by else "not tested"
+    return tuple(Fact(name, schemes.gate(families[name])) for name in order)
 
 
 def _family(family: FamilyRecord, members: tuple[Line, ...]) -> PromisedFamily:
@@ -91,6 +85,7 @@ def _family(family: FamilyRecord, members: tuple[Line, ...]) -> PromisedFamily:
         Fact("Dependence it needs", f"valid under {family.valid_under}"),
         Fact("Control", criteria.control(family)),
         Fact("Number of hypotheses (m)", _sizes(family)),
+        *schemes.facts(family),
     ]
     return PromisedFamily(
         title=f"Family {family.id}", question=family.question, alarm=criteria.alarm(family), facts=tuple(facts),
@@ -151,13 +146,17 @@ def _hypothesis(line: Line, said: str) -> Row:
             Cell(claim(line), note=said),
             Cell(hypothesis.null, "symbols"),
             Cell(hypothesis.alternative, "symbols"),
-            Cell(hypothesis.test_title, note=SIDES[hypothesis.side]),
+            Cell(hypothesis.test_title, note=_side(hypothesis)),
         ),
     )
 
 
+def _side(hypothesis: HypothesisRecord) -> str:
+    return "two one-sided tests" if hypothesis.null_form == "outside" else SIDES[hypothesis.side]
+
+
 def _kinds(members: tuple[Line, ...]) -> Table:
-    kinds = _grouped(members, lambda one: (one.null, one.alternative, one.test_title, SIDES[one.side]))
+    kinds = _grouped(members, lambda one: (one.null, one.alternative, one.test_title, _side(one)))
     body = (
         Row(head=Cell(f"{integer(len(ids))} hypotheses"), cells=tuple(Cell(text) for text in kind))
         for kind, ids in kinds.items()

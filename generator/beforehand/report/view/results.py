@@ -4,7 +4,7 @@ import math
 
 from beforehand.record.model import FamilyRecord, Record
 from beforehand.report.figures.model import Figure
-from beforehand.report.view import criteria, sentences, tables
+from beforehand.report.view import criteria, schemes, sentences, tables
 from beforehand.report.view.estimates import estimates_table
 from beforehand.report.view.groups import group_tables
 from beforehand.report.view.headings import HEADINGS, section
@@ -42,7 +42,7 @@ def _family(family: FamilyRecord, every: tuple[Line, ...], drawn: dict[str, Draw
     return ResultsOfFamily(
         title=f"Family {family.id}",
         question=family.question,
-        verdict=sentences.family_verdict(family.states),
+        verdict=f"{sentences.family_verdict(family.states)} {schemes.verdict(family)}".rstrip(),
         alarm=criteria.alarm(family),
         shown_part=_part(len(lines), len(every)),
         findings=tuple(sentences.finding(line) for line in lines),

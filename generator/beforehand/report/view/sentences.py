@@ -2,6 +2,7 @@
 
 from collections.abc import Callable
 
+from beforehand.report.view import schemes
 from beforehand.report.view.lines import Line
 from beforehand.report.view.model import Finding
 from beforehand.report.view.written import comparison, has_estimate, p_of, with_interval
@@ -16,8 +17,8 @@ def capital(text: str) -> str:
 
 def claim(line: Line) -> str:
     """Give the claim as the spec words it, or the alternative in words."""
-    text = (line.hypothesis.claim or line.hypothesis.alternative_in_words or line.label).strip().removesuffix(".")
-    return capital(text)
+    written = line.hypothesis.claim.strip().removesuffix(".")
+    return written or capital(line.hypothesis.alternative_in_words or line.label)
 
 
 def lead(line: Line) -> str:
@@ -54,13 +55,22 @@ def _against(line: Line) -> str:
 
 
 def _not_rejected(line: Line) -> str:
+    if _beyond(line):
+        return f"{_quoted(line)} The interval lies wholly on the other side of the null value."
     return f"{_quoted(line)} Nor is the contrary shown."
 
 
+def _beyond(line: Line) -> bool:
+    """Whether the unadjusted interval excludes the null value on the side that a one-sided test does not look at."""
+    if len(line.hypothesis.null_values) != 1:
+        return False
+    (null,) = line.hypothesis.null_values
+    beyond = {"above": line.number("upper") < null, "below": line.number("lower") > null}
+    return beyond.get(line.hypothesis.side, False)
+
+
 def _not_tested(line: Line) -> str:
-    gate = line.family.closed_by
-    why = f"the gate of family {gate} stayed closed" if gate else "its gate stayed closed"
-    return f"{_quoted(line)} No claim is made, because {why}; the numbers are descriptive."
+    return f"{_quoted(line)} No claim is made, because {schemes.waiting(line)}; the numbers are descriptive."
 
 
 def _no_result(line: Line) -> str:

@@ -3,11 +3,11 @@
 import math
 from collections.abc import Iterable
 
-from beforehand.report.view import tables
+from beforehand.report.view import schemes, tables
 from beforehand.report.view.lines import Line
 from beforehand.report.view.model import Cell, Row, Table
 from beforehand.report.view.written import MET
-from beforehand.spelling import calculated, exact, multiplication
+from beforehand.spelling import NOTHING, calculated, exact, multiplication
 from beforehand.terms import STATE_WORDS
 
 LARGER = (
@@ -19,10 +19,6 @@ SMALLER = (
     "result, that one counts (running minimum)."
 )
 CAPPED = "A result above 1 counts as 1."
-STUDY = (
-    "The adjusted p of the study is the largest of the family's own and those of the families that must be rejected "
-    "before it."
-)
 
 
 def trail_table(lines: tuple[Line, ...]) -> Table:
@@ -30,22 +26,31 @@ def trail_table(lines: tuple[Line, ...]) -> Table:
     decided = sorted((line for line in lines if _is_adjusted(line)), key=lambda line: line.count("rank"))
     return Table(
         caption=f"Decision trail, family {lines[0].family.id}, by {lines[0].family.procedure_title}",
-        head=tables.head("Rank", "Hypothesis", "Enters with", "Arithmetic", "Decision"),
+        head=tables.head(_first(lines[0]), "Hypothesis", "Enters with", "Arithmetic", "Decision"),
         rows=tuple(_row(line) for line in decided),
         notes=tuple(_notes(decided)),
         style="trail",
     )
 
 
+def _first(line: Line) -> str:
+    return "Step" if schemes.is_walked(line) else "Rank"
+
+
 def _is_adjusted(line: Line) -> bool:
-    return not math.isnan(line.number("p_family"))
+    return schemes.is_walked(line) or not math.isnan(line.number("p_family"))
+
+
+def _adjusted(line: Line) -> float:
+    return line.number("p_study" if schemes.is_walked(line) else "p_family")
 
 
 def _row(line: Line) -> Row:
     sign = "≤" if line.state in MET else ">"
     decision = f"{calculated(line.deciding, line.threshold)} {sign} {exact(line.threshold)}: {STATE_WORDS[line.state]}"
+    decision = decision if line.values["decides"] else STATE_WORDS[line.state]
     return Row(
-        head=Cell(str(line.count("rank"))),
+        head=Cell(str(line.count("rank") or NOTHING)),
         cells=(Cell(line.label), Cell(entered(line)), Cell(arithmetic(line)), Cell(decision, "strong")),
     )
 
@@ -65,18 +70,20 @@ def entered(line: Line) -> str:
 
 def arithmetic(line: Line) -> str:
     """Write p × factor = product, the rank that counts where it is another one, and the cap at 1."""
-    adjusted = line.number("p_family")
+    adjusted = _adjusted(line)
     steps = [text for text in (_multiplication(line), _from_elsewhere(line)) if text]
     if adjusted == 1 and line.number("product") > 1 and line.count("from_rank") == line.count("rank"):
         steps.append("counts as 1")
     study = line.number("p_study")
     if line.values["decides"] == "p_study" and study > adjusted:
-        steps.append(f"families before: {calculated(study, line.threshold)}")
+        steps.append(schemes.of_the_study(line))
     return "; ".join(steps)
 
 
 def _multiplication(line: Line) -> str:
     factor, product = line.number("factor"), line.number("product")
+    if math.isnan(factor) and schemes.is_walked(line):
+        return line.hypothesis.arithmetic
     if math.isnan(factor):
         return f"{line.hypothesis.arithmetic or 'product'} = {calculated(product, line.threshold)}"
     written = multiplication(line.number("p_entered"), factor, rank=line.count("rank"), threshold=line.threshold)
@@ -86,15 +93,18 @@ def _multiplication(line: Line) -> str:
 def _from_elsewhere(line: Line) -> str:
     if line.count("from_rank") == line.count("rank"):
         return ""
-    return f"rank {line.count('from_rank')} counts: {calculated(line.number('p_family'), line.threshold)}"
+    return f"{_first(line).lower()} {line.count('from_rank')} counts: {calculated(_adjusted(line), line.threshold)}"
 
 
 def _notes(lines: list[Line]) -> Iterable[str]:
-    if any(line.count("from_rank") < line.count("rank") for line in lines):
+    walked = any(schemes.is_walked(line) for line in lines)
+    if walked:
+        yield schemes.WALKED
+    if not walked and any(line.count("from_rank") < line.count("rank") for line in lines):
         yield LARGER
     if any(line.count("from_rank") > line.count("rank") for line in lines):
         yield SMALLER
     if any(line.number("product") > 1 for line in lines):
         yield CAPPED
     if any(line.values["decides"] == "p_study" and line.number("p_study") > line.number("p_family") for line in lines):
-        yield STUDY
+        yield schemes.NOTES[lines[0].scheme]

@@ -51,8 +51,9 @@ def with_interval(line: Line) -> str:
     estimate = with_unit(numbers.estimate, line.hypothesis.unit)
     if math.isnan(line.number("lower")) and math.isnan(line.number("upper")):
         return estimate
-    level = percent(line.number("interval_level"))
-    return f"{estimate} ({level} interval {between(numbers.lower, numbers.upper)})"
+    level = line.number("interval_level")
+    kind = "supplied" if math.isnan(level) else percent(level)
+    return f"{estimate} ({kind} interval {between(numbers.lower, numbers.upper)})"
 
 
 def bound(line: Line) -> str:
