@@ -50,6 +50,10 @@ ColumnRole = Literal[
     "cluster", "stratum", "time", "event", "identifier",
 ]  # fmt: skip
 
+# What kind of analysis supports a hypothesis, and as what a column is described.
+SupportiveKind = Literal["sensitivity", "supplementary", "subgroup"]
+DescribedKind = Literal["number", "count", "category", "date"]
+
 # What the value of an expression is, row by row.
 ValueKind = Literal["number", "text", "date", "truth"]
 MissingMethod = Literal["complete_cases", "fail", "worst_case", "best_case", "multiple_imputation"]
@@ -57,7 +61,7 @@ MissingMethod = Literal["complete_cases", "fail", "worst_case", "best_case", "mu
 # Every word that a spec may answer to: the warning rules of snooping, built or not.
 WARNING_NAMES: tuple[str, ...] = (
     "assumed_correlation_used", "baseline_tests", "cannot_reject", "claim_logic_mismatch",
-    "contrast_fitted_to_means", "covariates_screened", "criterion_changed", "cut_point_searched",
+    "contrast_fitted_to_means", "covariates_screened", "criterion_changed", "cut_point_searched", "decided_twice",
     "dependence_doubtful", "direction_changed", "exclusions_changed", "extreme_pair_picked", "families_regrouped",
     "flexible_outlier_rule", "fragile_decision", "history_gap", "hypothesis_added_after_seal",
     "intervals_not_adjusted", "looks_off_schedule", "margin_changed", "margin_without_basis",

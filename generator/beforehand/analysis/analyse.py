@@ -5,8 +5,9 @@ from collections.abc import Callable
 import numpy as np
 import threadpoolctl  # type: ignore[import-untyped]  # it ships no types
 
-from beforehand.analysis.agreement import P_FLOOR, Agreement, bound_near
-from beforehand.analysis.computed import Computed, compute
+from beforehand.analysis.agreement import Agreement
+from beforehand.analysis.computed import Computed
+from beforehand.analysis.described import description_records
 from beforehand.analysis.drawn import drawn
 from beforehand.analysis.families import (
     EnteredFamily,
@@ -30,9 +31,10 @@ from beforehand.analysis.records import (
     rows_record,
     study_record,
 )
-from beforehand.analysis.second import PlainTable, SecondResult, compute_again
+from beforehand.analysis.supportive import supported, supportive_records
+from beforehand.analysis.twice import Twice, TwoComputations
 from beforehand.data.dataset import Dataset, with_members
-from beforehand.hypothesis_tests.contract import NotComputed, Outcome
+from beforehand.hypothesis_tests.contract import Outcome
 from beforehand.record.canonical import sha256
 from beforehand.record.manifest import checksum_lines
 from beforehand.record.model import PromiseRecord, Record, Results
@@ -42,8 +44,6 @@ from beforehand.spec.planned import PlannedFamily, Spec
 
 EVERY = 250
 """Progress is told after so many hypotheses."""
-STANDARD_ERRORS = 1e-8
-"""Estimates and interval ends are compared down to this share of a standard error."""
 
 
 def analyse(spec: Spec, dataset: Dataset, *, progress: Callable[[str], None] = lambda _: None) -> Record:
@@ -54,8 +54,10 @@ def analyse(spec: Spec, dataset: Dataset, *, progress: Callable[[str], None] = l
     spec = with_members(spec, dataset)
     agreement = Agreement()
     with threadpoolctl.threadpool_limits(1, user_api="blas"):  # the last bits depend on the number of threads
-        computed, judged = _decide(spec, dataset, agreement, progress)
-        table = results(judged, computed)
+        compute = TwoComputations.of(dataset, agreement)
+        computed, judged = _decide(spec, compute, progress)
+        supporting = supported(spec, compute)
+        table = results(judged, computed, supporting)
         families = tuple(family_record(one) for one in judged)
         hypotheses = tuple(
             words
@@ -86,10 +88,12 @@ def analyse(spec: Spec, dataset: Dataset, *, progress: Callable[[str], None] = l
         rows=tuple(rows_record(one) for one in dataset.tables.values()),
         families=families,
         hypotheses=hypotheses,
+        supportive=supportive_records(spec, computed, supporting),
+        descriptions=description_records(spec, dataset),
         warnings=warned.records,
         unneeded_answers=warned.unneeded_answers,
         agreement=agreement.settle(),
-        methods=method_records(judged, tuple(computed.values())),
+        methods=method_records(judged, (*computed.values(), *supporting)),
         drawn=drawn(
             families,
             hypotheses,
@@ -114,57 +118,36 @@ def _study_promise(spec: Spec) -> PromiseRecord | None:
 def decisions(spec: Spec, dataset: Dataset) -> Results:
     """Give the table of record of another plan or of other rows: what a warning rule asks for."""
     spec = with_members(spec, dataset)
-    computed, judged = _decide(spec, dataset, Agreement(), lambda _: None)
+    computed, judged = _decide(spec, TwoComputations.of(dataset, Agreement()), lambda _: None)
     return results(judged, computed)
 
 
 def _decide(
-    spec: Spec, dataset: Dataset, agreement: Agreement, progress: Callable[[str], None]
+    spec: Spec, compute: TwoComputations, progress: Callable[[str], None]
 ) -> tuple[dict[str, Computed], tuple[JudgedFamily, ...]]:
     computed: dict[str, Computed] = {}
     entered = []
-    plain = {name: PlainTable(table) for name, table in dataset.tables.items()}
     m = sum(len(family.members) for family in spec.families)
     for family in spec.families:
-        seconds = []
+        both = []
         for member in family.members:
             if len(computed) % EVERY == 0:
                 progress(f"testing hypothesis {len(computed) + 1} of {m}, twice")
-            one = compute(family, member, dataset)
-            second = compute_again(family, member, one.test, plain[member.data], one.confidence)
-            _compare(one, second, float(family.promise.level), agreement)
-            computed[member.id] = one
-            seconds.append(second)
-        entered.append(_enter(family, [computed[member.id] for member in family.members], seconds))
+            both.append(compute(family, member))
+            computed[member.id] = both[-1].first
+        entered.append(_enter(family, both))
     progress("adjusting and deciding, twice")
-    judged = judge(spec, tuple(entered), agreement)
+    judged = judge(spec, tuple(entered), compute.agreement)
     return with_simultaneous(judged, computed), judged
 
 
-def _enter(family: PlannedFamily, computed: list[Computed], seconds: list[SecondResult]) -> EnteredFamily:
+def _enter(family: PlannedFamily, both: list[Twice]) -> EnteredFamily:
     return EnteredFamily(
         family=family,
-        p=np.array([one.p_entered for one in computed], dtype=np.float64),
-        second_p=tuple(second.p_entered for second in seconds),
-        has_result=np.array([isinstance(one.result, Outcome) for one in computed], dtype=bool),
-        against_claim=np.array([one.side_agrees == "no" for one in computed], dtype=bool),
-        measured=measured(family, computed),
-        second_measured=measured_again(family, seconds),
+        p=np.array([one.first.p_entered for one in both], dtype=np.float64),
+        second_p=tuple(one.second.p_entered for one in both),
+        has_result=np.array([isinstance(one.first.result, Outcome) for one in both], dtype=bool),
+        against_claim=np.array([one.first.side_agrees == "no" for one in both], dtype=bool),
+        measured=measured(family, [one.first for one in both]),
+        second_measured=measured_again(family, [one.second for one in both]),
     )
-
-
-def _compare(one: Computed, second: SecondResult, level: float, agreement: Agreement) -> None:
-    """Compare the two computations of one hypothesis, number by number."""
-    about, first, again = one.hypothesis.id, one.result, second.result
-    agreement.same(about, "analysed units", first.n, again.n)
-    agreement.same(about, "whether there is a result", type(first).__name__, type(again).__name__)
-    if isinstance(first, NotComputed) or isinstance(again, NotComputed):
-        return
-    agreement.same(about, "side of the claim", one.side_agrees, second.side_agrees)
-    bound = one.test.bound
-    scale = first.standard_error if first.standard_error > 0 else abs(first.upper - first.lower)
-    floor = STANDARD_ERRORS * scale if np.isfinite(scale) else P_FLOOR
-    for name in ("estimate", "lower", "upper"):
-        agreement.numbers(about, name, getattr(first, name), getattr(again, name), bound=bound, floor=floor)
-    for quantity, x, y in (("p", first.p, second.p), ("p as it enters", one.p_entered, second.p_entered)):
-        agreement.numbers(about, quantity, x, y, bound=bound_near(level, x, bound=bound), floor=P_FLOOR)

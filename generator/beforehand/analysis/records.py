@@ -48,6 +48,14 @@ MOVING_LEVEL = (
     "The level of this family depends on what is found in others, so that no simultaneous interval has a confidence "
     "known beforehand; only the unadjusted interval is printed."
 )
+UNDECIDED: dict[str, Any] = {
+    **dict.fromkeys(("p_family", "p_study", "threshold", "p_entered", "factor", "product"), MISSING_NUMBER),
+    **dict.fromkeys(("matching_lower", "matching_upper", "matching_level"), MISSING_NUMBER),
+    **dict.fromkeys(("decides", "side_agrees", "entered_as"), ""),
+    **dict.fromkeys(("rank", "from_rank", "survives_up_to"), 0),
+    "state": "described",
+}
+"""What the columns of a decision hold where nothing is decided."""
 
 
 def study_record(spec: Spec) -> StudyRecord:
@@ -176,20 +184,21 @@ def hypothesis_records(
     falls = judged.decision.falls
     waits_for = falls.waits_for if falls else [()] * len(computed)
     return tuple(
-        _hypothesis(spec, family, one, label=label, arithmetic=arithmetic, waits_for=waiting or None)
+        hypothesis_record(spec, family, one, label=label, arithmetic=arithmetic, waits_for=waiting or None)
         for one, label, arithmetic, waiting in zip(computed, names, judged.arithmetic, waits_for, strict=True)
     )
 
 
-def _hypothesis(
+def hypothesis_record(
     spec: Spec,
     family: PlannedFamily,
     computed: Computed,
     *,
     label: str,
-    arithmetic: str,
-    waits_for: tuple[str, ...] | None,
+    arithmetic: str = "",
+    waits_for: tuple[str, ...] | None = None,
 ) -> HypothesisRecord:
+    """Put one hypothesis, or a supportive analysis of one, into words."""
     hypothesis, test, result = computed.hypothesis, computed.test, computed.result
     unit = unit_of(spec, hypothesis, test)
     pair = sides(hypothesis)
@@ -314,31 +323,27 @@ def method_records(judged: tuple[JudgedFamily, ...], computed: tuple[Computed, .
     )
 
 
-def results(judged: tuple[JudgedFamily, ...], computed: dict[str, Computed]) -> Results:
-    """Put the table of record together: families in the order of the spec, members in the order of the family."""
+def results(
+    judged: tuple[JudgedFamily, ...], computed: dict[str, Computed], described: tuple[Computed, ...] = ()
+) -> Results:
+    """Put the table of record together: families in the order of the spec, members in the order of the family.
+
+    What is described and decides nothing comes after them.
+    """
     rows = [
         _row(one, index, computed[member.id])
         for one in judged
         for index, member in enumerate(one.entered.family.members)
     ]
+    rows += [_computed(one) | UNDECIDED for one in described]
     columns = {name: [row[name] for row in rows] for name in rows[0]} if rows else {}
     return Results(**{name: results_column(name, values) for name, values in columns.items()})
 
 
 def _row(judged: JudgedFamily, index: int, computed: Computed) -> dict[str, Any]:
-    outcome = computed.result if isinstance(computed.result, Outcome) else None
-    decision, n = judged.decision, computed.result.n
-    aligned = computed.test.aligned
-    number = dict.fromkeys(("estimate", "lower", "upper", "statistic", "df", "p", "standard_error"), MISSING_NUMBER)
-    if outcome:
-        number = {name: float(getattr(outcome, name)) for name in number}
+    decision = judged.decision
     matching = computed.matching if decision.tested else None
-    return {
-        "id": computed.hypothesis.id,
-        "family": judged.entered.family.id,
-        "test": computed.test.name,
-        "n": sum(n),
-        **number,
+    return _computed(computed) | {
         "p_family": float(decision.p_family[index]),
         "p_study": float(decision.p_study[index]),
         "threshold": float(decision.threshold[index]),
@@ -351,11 +356,27 @@ def _row(judged: JudgedFamily, index: int, computed: Computed) -> dict[str, Any]
         "factor": float(judged.factor[index]),
         "product": float(judged.product[index]),
         "from_rank": int(judged.from_rank[index]),
-        "n_first": n[0] if n else 0,
-        "n_second": n[1] if len(n) > 1 and not aligned else 0,
-        "interval_level": computed.confidence if outcome else MISSING_NUMBER,
         "matching_lower": matching.lower if matching else MISSING_NUMBER,
         "matching_upper": matching.upper if matching else MISSING_NUMBER,
         "matching_level": computed.matching_confidence if matching else MISSING_NUMBER,
         "survives_up_to": int(judged.survives_up_to[index]),
+    }
+
+
+def _computed(computed: Computed) -> dict[str, Any]:
+    """Give the columns that a test fills by itself, whatever is decided."""
+    outcome = computed.result if isinstance(computed.result, Outcome) else None
+    n, aligned = computed.result.n, computed.test.aligned
+    number = dict.fromkeys(("estimate", "lower", "upper", "statistic", "df", "p", "standard_error"), MISSING_NUMBER)
+    if outcome:
+        number = {name: float(getattr(outcome, name)) for name in number}
+    return {
+        "id": computed.hypothesis.id,
+        "family": computed.hypothesis.family,
+        "test": computed.test.name,
+        "n": sum(n),
+        **number,
+        "n_first": n[0] if n else 0,
+        "n_second": n[1] if len(n) > 1 and not aligned else 0,
+        "interval_level": computed.confidence if outcome else MISSING_NUMBER,
     }

@@ -50,7 +50,7 @@ def _print(checked: "Checked") -> None:
         click.echo(f"  {family.procedure}, {m}, level {exact(float(family.promise.level))}")
         rows: list[tuple[str, ...]] = [("hypothesis", "test", "null", "alternative", "units", "smallest p")]
         rows += [
-            (h.id, h.test, h.null, h.alternative, " + ".join(map(integer, h.sizes)), _smallest(h.smallest_p))
+            (h.id, h.test, h.null, h.alternative, _units(h.sizes), _smallest(h.smallest_p))
             for h in checked.hypotheses
             if h.family == family.id
         ]
@@ -58,6 +58,10 @@ def _print(checked: "Checked") -> None:
             screen.print_table(rows)
         else:
             click.echo("  Its hypotheses are the rows of the data, which are not there yet.")
+        click.echo()
+    if checked.beside:
+        click.secho("Beside the hypotheses: not counted, and nothing is decided", bold=True)
+        screen.print_table([("id", "what", "units"), *((b.id, b.what, _units(b.sizes)) for b in checked.beside)])
         click.echo()
     if checked.dataset is None:
         click.echo("No data yet: none of the files is there, so the spec was checked alone.")
@@ -68,6 +72,12 @@ def _print(checked: "Checked") -> None:
             f"{hypothesis.id} cannot be rejected: the smallest p that {hypothesis.test} can reach here is "
             f"{exact(hypothesis.smallest_p or 0)}, and its first threshold is {exact(hypothesis.first_threshold)}."
         )
+
+
+def _units(sizes: tuple[int, ...]) -> str:
+    from beforehand.spelling import integer
+
+    return " + ".join(map(integer, sizes))
 
 
 def _smallest(p: float | None) -> str:

@@ -10,7 +10,7 @@ from numpy.typing import NDArray
 from beforehand.data.evaluate import evaluated, is_true
 from beforehand.data.table import AnalysisRows, Counts, Grouping, Rows, Table
 from beforehand.spec.expressions import Column
-from beforehand.spec.model import DataSet, PerHypothesis
+from beforehand.spec.model import DataSet, Description, PerHypothesis
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -34,7 +34,7 @@ class Missing:
 
 @dataclass(frozen=True)
 class Chosen:
-    """The rows that a hypothesis is about."""
+    """The rows that a hypothesis, or a description, is about."""
 
     rows: Rows
     undecided: int
@@ -62,8 +62,8 @@ def analysis_rows(
     return tuple(found)
 
 
-def rows_of(table: Table, asked: PerHypothesis, *, what: str) -> Chosen:
-    """Find the rows that a hypothesis is about: those of its analysis set in which its condition is true."""
+def rows_of(table: Table, asked: PerHypothesis | Description, *, what: str) -> Chosen:
+    """Find the rows that something is about: those of its analysis set in which its condition is true."""
     rows = np.ones(table.lines.size, dtype=bool)
     if asked.analysis_set:
         rows = table.analysis_set(asked.analysis_set).rows

@@ -6,11 +6,12 @@ from typing import Any
 
 from beforehand.data.dataset import Dataset, read_data, with_members
 from beforehand.data.samples import unlabelled
+from beforehand.data.sets import rows_of as chosen_rows
 from beforehand.hypothesis_tests.contract import STATISTICAL_TESTS
 from beforehand.hypothesis_tests.nulls import Null, alternative_in_symbols, null_in_symbols
 from beforehand.multiplicity.contract import PROCEDURES
 from beforehand.multiplicity.decision import is_rejected
-from beforehand.spec.model import Hypothesis
+from beforehand.spec.model import Description, Hypothesis
 from beforehand.spec.planned import PlannedFamily, Spec
 
 
@@ -37,6 +38,17 @@ class PlannedHypothesis:
 
 
 @dataclass(frozen=True, kw_only=True)
+class PlannedBeside:
+    """A supportive analysis, or a description: what decides nothing."""
+
+    id: str
+    what: str
+    """What kind of analysis it is, and of which hypothesis; or the columns that are described."""
+    sizes: tuple[int, ...]
+    """Units with an outcome in each group, or the rows described; empty where no data are there yet."""
+
+
+@dataclass(frozen=True, kw_only=True)
 class Checked:
     """A sound spec with what it plans, and the rows that it finds."""
 
@@ -44,6 +56,7 @@ class Checked:
     dataset: Dataset | None
     """None where no data file is there yet."""
     hypotheses: tuple[PlannedHypothesis, ...]
+    beside: tuple[PlannedBeside, ...]
 
     @property
     def out_of_reach(self) -> tuple[PlannedHypothesis, ...]:
@@ -59,6 +72,7 @@ class Checked:
                 for f in self.spec.families
             ],
             "hypotheses": [vars(hypothesis) for hypothesis in self.hypotheses],
+            "beside": [vars(one) for one in self.beside],
             "rows": {name: rows_of(self.dataset, name) for name in self.dataset.tables} if self.dataset else None,
         }
 
@@ -66,10 +80,11 @@ class Checked:
 def check(spec: Spec, *, data_root: Path | None = None) -> Checked:
     """Check a spec with its data; where none of its files is there yet, the spec alone."""
     if not any((base / one.file).exists() for base in (spec.folder, data_root) if base for one in spec.data):
-        return Checked(spec=spec, dataset=None, hypotheses=_planned(spec, None))
+        return Checked(spec=spec, dataset=None, hypotheses=_planned(spec, None), beside=_beside(spec, None))
     dataset = read_data(spec, data_root=data_root)
     whole = with_members(spec, dataset)
-    return Checked(spec=whole, dataset=dataset, hypotheses=_planned(whole, dataset))
+    planned, beside = _planned(whole, dataset), _beside(whole, dataset)
+    return Checked(spec=whole, dataset=dataset, hypotheses=planned, beside=beside)
 
 
 def rows_of(dataset: Dataset, name: str) -> dict[str, Any]:
@@ -85,6 +100,30 @@ def rows_of(dataset: Dataset, name: str) -> dict[str, Any]:
 
 def _planned(spec: Spec, dataset: Dataset | None) -> tuple[PlannedHypothesis, ...]:
     return tuple(_one(family, member, dataset) for family in spec.families for member in family.members)
+
+
+def _beside(spec: Spec, dataset: Dataset | None) -> tuple[PlannedBeside, ...]:
+    """List what decides nothing; its rows are found, so that what is wrong with them is found too."""
+    supportive = (
+        PlannedBeside(
+            id=one.id,
+            what=f"{one.analysis} analysis of {one.of}",
+            sizes=unlabelled(dataset, one.hypothesis).sizes if dataset else (),
+        )
+        for one in spec.supportive
+    )
+    described = (
+        PlannedBeside(id=one.id, what=f"description of {', '.join(one.columns)}", sizes=_described(spec, one, dataset))
+        for one in spec.document.describe
+    )
+    return (*supportive, *described)
+
+
+def _described(spec: Spec, asked: Description, dataset: Dataset | None) -> tuple[int, ...]:
+    if dataset is None:
+        return ()
+    table = dataset.tables[asked.data or spec.data[0].id]
+    return (int(chosen_rows(table, asked, what=f"description '{asked.id}'").rows.sum()),)
 
 
 def _one(family: PlannedFamily, hypothesis: Hypothesis, dataset: Dataset | None) -> PlannedHypothesis:

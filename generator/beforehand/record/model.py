@@ -15,6 +15,7 @@ from beforehand.terms import (
     Alternative,
     ClaimDirection,
     Criterion,
+    DescribedKind,
     Design,
     EnteredAs,
     EvidenceFrom,
@@ -26,6 +27,7 @@ from beforehand.terms import (
     Scope,
     Severity,
     State,
+    SupportiveKind,
 )
 
 Floats = NDArray[np.float64]
@@ -34,7 +36,10 @@ Integers = NDArray[np.int64]
 
 @dataclass(frozen=True, kw_only=True)
 class Results:
-    """The table of record: one row per hypothesis, in the order of the spec. NaN and "" stand for "none"."""
+    """The table of record: one row per hypothesis, in the order of the spec; then one per supportive analysis.
+
+    NaN and "" stand for "none". What supports is ``described``, with nothing in the columns of a decision.
+    """
 
     id: tuple[str, ...]
     family: tuple[str, ...]
@@ -346,6 +351,82 @@ class HypothesisRecord:
 
 
 @dataclass(frozen=True, kw_only=True)
+class SupportiveRecord:
+    """One analysis that supports a hypothesis and decides nothing; its numbers stand in its row of ``tests.csv``."""
+
+    of: str
+    """The hypothesis whose question it asks another way."""
+    analysis: SupportiveKind
+    because: str
+    changes: tuple[str, ...]
+    """What it does another way: "analysis set: per_protocol instead of full"."""
+    hypothesis: HypothesisRecord
+    """What was computed, in words; the id is that of the analysis."""
+    p_read: float | None
+    """Its unadjusted p as the level reads it, doubled or of the claim's side; None without a result."""
+    read_as: EnteredAs
+    """How ``p_read`` follows from p."""
+    same_direction: bool | None
+    """Whether both estimates lie on the same side of their null values; None where one of the two has no result."""
+    same_side: bool | None
+    """Whether both unadjusted p-values, as the level reads them, lie on the same side of the level."""
+
+
+@dataclass(frozen=True, kw_only=True)
+class DescribedGroup:
+    """One column in one group; what does not apply, or is held back, is None or empty."""
+
+    n: int
+    """Values that are there."""
+    missing: int
+    mean: float | None = None
+    sd: float | None = None
+    median: float | None = None
+    lower_quartile: float | None = None
+    upper_quartile: float | None = None
+    total: float | None = None
+    """Of a count."""
+    counts: tuple[int, ...] = ()
+    """Of each level of a category, in the order of its levels."""
+    earliest: str = ""
+    """Of a date, where row values may be printed."""
+    latest: str = ""
+
+
+@dataclass(frozen=True, kw_only=True)
+class DescribedColumn:
+    """One described column."""
+
+    column: str
+    kind: DescribedKind
+    unit: str
+    levels: tuple[str, ...]
+    groups: tuple[DescribedGroup, ...]
+    """In the order of the groups of the table."""
+
+
+@dataclass(frozen=True, kw_only=True)
+class DescriptionRecord:
+    """One table without any p-value."""
+
+    id: str
+    data: str
+    analysis_set: str
+    where: str
+    undecided: int
+    """Rows left out because the condition has no value for them."""
+    by: str
+    """The column of the groups; "" where there are none."""
+    groups: tuple[str, ...]
+    """The first, "", is all rows together."""
+    rows: tuple[int, ...]
+    """Rows in each group."""
+    columns: tuple[DescribedColumn, ...]
+    fewest: int
+    """From how many values on a number is summarised: fewer could be worked out from the summary."""
+
+
+@dataclass(frozen=True, kw_only=True)
 class WarningRecord:
     """One finding of a warning rule."""
 
@@ -411,6 +492,10 @@ class Record:
     rows: tuple[RowsRecord, ...]
     families: tuple[FamilyRecord, ...]
     hypotheses: tuple[HypothesisRecord, ...]
+    supportive: tuple[SupportiveRecord, ...] = ()
+    """Analyses that support a hypothesis and decide nothing, in the order of the spec."""
+    descriptions: tuple[DescriptionRecord, ...] = ()
+    """Tables without any p-value."""
     warnings: tuple[WarningRecord, ...]
     unneeded_answers: tuple[str, ...]
     """Answers in the spec to warnings that did not fire."""

@@ -33,8 +33,8 @@ def unmentioned_columns(spec: Spec, dataset: Dataset) -> tuple[Unmentioned, ...]
     """Give the data sets that hold such columns.
 
     A declared column counts when it is a number, a count or a category, has no role or that of an outcome, and is used
-    neither by a hypothesis, nor to name rows, units or groups, nor by an exclusion, an analysis set or a derived column
-    that is used. A column of the file that is not declared always counts.
+    neither by a hypothesis or what supports one, nor to name rows, units or groups, nor by an exclusion, an analysis
+    set or a derived column that is used. A column of the file that is not declared always counts.
 
     Parameters
     ----------
@@ -70,6 +70,9 @@ def _used(spec: Spec, declared: DataSet) -> set[str]:
         for written in family.written:
             if written.data in (None, declared.id):
                 used.update(_texts(written.model_dump()))
+    for asked in spec.document.supportive:
+        if asked.change.data in (None, declared.id):
+            used.update(_texts(asked.change.model_dump()))
     for name, derived in reversed(declared.derive.items()):  # each uses only columns that stand above it
         if name in used:
             used.update(parse(derived.is_).names)

@@ -20,7 +20,7 @@ PROCEDURES_LATER = (
 )  # fmt: skip
 
 KEYS: dict[str, frozenset[str]] = {
-    "Document": frozenset({"looks", "supportive", "describe"}),
+    "Document": frozenset({"looks"}),
     "DataSet": frozenset({"feature", "samples"}),
     "Family": frozenset({"exploratory_after_gate", "dependence"}),
     "Graph": frozenset({"dependence"}),

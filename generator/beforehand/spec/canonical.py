@@ -7,16 +7,20 @@ import rfc8785
 from pydantic import BaseModel
 
 from beforehand.spec.model import PARTICULAR, Document, Exact, Family
-from beforehand.spec.planned import PlannedFamily
+from beforehand.spec.planned import PlannedFamily, PlannedSupportive
 
 _EMPTY: tuple[Any, ...] = ({}, (), [], None)
 _FORMS = ("comparisons", "hypotheses", "hypotheses_from")
 
 
-def canonical_parts(document: Document, families: tuple[PlannedFamily, ...]) -> tuple[bytes, bytes]:
+def canonical_parts(
+    document: Document, families: tuple[PlannedFamily, ...], supportive: tuple[PlannedSupportive, ...] = ()
+) -> tuple[bytes, bytes]:
     """Give the plan, with the expansion and every default, and the particulars."""
     plan, particulars = _split(document)
     plan["families"] = [_family(*pair) for pair in zip(document.families, families, strict=True)]
+    for written in plan.get("supportive", []):
+        written["analyses"] = [plain(one.hypothesis) for one in supportive if one.asked == written["id"]]
     return rfc8785.dumps(plan), rfc8785.dumps(particulars)
 
 

@@ -33,6 +33,15 @@ _RESERVED = "/-%"
 _PLACEHOLDER = re.compile(r"\{(group|first|second|feature)\}")
 
 
+@dataclasses.dataclass(frozen=True)
+class WrittenOut:
+    """One member of a family as if it had been written by hand, before any default is filled in."""
+
+    written: WrittenHypothesis
+    feature: str | None = None
+    """The column or the label that a short form made it of."""
+
+
 def escape(text: str) -> str:
     """Write a text of the data so that it can be part of an id: ``/ - %`` and unprintable characters as %XX."""
     return "".join(
@@ -85,12 +94,12 @@ def _with_rows(document: Document, family: PlannedFamily, labels: tuple[str, ...
     written = next(entry for entry in document.families if entry.id == family.id)
     if family.from_data is None:
         return family
-    members = (_member(document, written, family.from_data, escape(label), feature=label) for label in labels)
-    return dataclasses.replace(family, members=tuple(members))
+    members = (_written_out(written, family.from_data, escape(label), feature=label) for label in labels)
+    return dataclasses.replace(family, members=tuple(filled(document, written, member) for member in members))
 
 
 def _planned(family: Family, document: Document) -> PlannedFamily:
-    members = tuple(_members(family, document))
+    members = tuple(filled(document, family, member) for member in written_out(family, document))
     source = family.hypotheses_from
     from_data = _with_defaults(source, document) if source and source.outcomes is None else None
     return PlannedFamily(
@@ -132,27 +141,41 @@ def _of_study(promise: StudyPromise) -> Promise:
     return Promise.model_construct(_fields_set={name for name in shared if shared[name] is not None}, **shared)
 
 
-def _members(family: Family, document: Document) -> Iterator[Hypothesis]:
-    for written in family.written:
-        if isinstance(written, WrittenHypothesis):
-            yield _member(document, family, written, "", outcome=written.outcome, groups=written.groups)
-        elif isinstance(written, Comparisons):
-            for first, second in pairs_of(written, levels_of(document, written)):
-                groups = Groups(column=written.groups, first=first, second=second)
+def written_out(family: Family, document: Document) -> Iterator[WrittenOut]:
+    """Undo the short forms: each member that follows from the spec alone as if it had been written by hand."""
+    for form in family.written:
+        if isinstance(form, WrittenHypothesis):
+            yield WrittenOut(form)
+        elif isinstance(form, Comparisons):
+            for first, second in pairs_of(form, levels_of(document, form)):
+                groups = Groups(column=form.groups, first=first, second=second)
                 name = f"{escape(first)}-{escape(second)}"
-                yield _member(document, family, written, name, outcome=written.outcome, groups=groups)
+                yield _written_out(family, form, name, outcome=form.outcome, groups=groups)
         else:
-            for column in written.outcomes or ():
-                outcome = EventOutcome(column=column, values=written.values) if written.values else column
-                yield _member(
-                    document, family, written, escape(column), outcome=outcome, groups=written.groups, feature=column
-                )
+            for column in form.outcomes or ():
+                outcome = EventOutcome(column=column, values=form.values) if form.values else column
+                yield _written_out(family, form, escape(column), outcome=outcome, groups=form.groups, feature=column)
+
+
+def _written_out(
+    family: Family,
+    form: PerHypothesis,
+    name: str,
+    *,
+    outcome: Outcome | None = None,
+    groups: Groups | None = None,
+    feature: str | None = None,
+) -> WrittenOut:
+    shared = {key: getattr(form, key) for key in PerHypothesis.model_fields}
+    shared.update(id=f"{family.id}/{name}", outcome=outcome, groups=groups)
+    return WrittenOut(WrittenHypothesis.model_construct(_fields_set=set(shared), **shared), feature)
 
 
 def levels_of(document: Document, written: Comparisons) -> tuple[str, ...]:
     """Give the declared levels of the column whose pairs are compared."""
-    data_set = next(entry for entry in document.data if entry.id == (written.data or document.data[0].id))
-    column = data_set.columns.get(written.groups) or data_set.derive.get(written.groups)
+    named = written.data or document.data[0].id
+    data_set = next((entry for entry in document.data if entry.id == named), None)
+    column = data_set and (data_set.columns.get(written.groups) or data_set.derive.get(written.groups))
     return (column.levels if column else None) or ()
 
 
@@ -164,32 +187,23 @@ def pairs_of(written: Comparisons, levels: tuple[str, ...]) -> list[tuple[str, s
     return [(later, earlier) for earlier, later in itertools.combinations(levels, 2)]
 
 
-def _member(
-    document: Document,
-    family: Family,
-    written: PerHypothesis,
-    name: str,
-    *,
-    outcome: Outcome | None = None,
-    groups: Groups | None = None,
-    feature: str | None = None,
-) -> Hypothesis:
+def filled(document: Document, family: Family, one: WrittenOut) -> Hypothesis:
     """Make one member: what is written, and a value for what is left out."""
-    test = STATISTICAL_TESTS[written.test]
+    written, test = one.written, STATISTICAL_TESTS[one.written.test]
     shared = {key: getattr(written, key) for key in PerHypothesis.model_fields}
     shared.update(
-        id=written.id if isinstance(written, WrittenHypothesis) else f"{family.id}/{name}",
+        id=written.id,
         family=family.id,
         data=written.data or document.data[0].id,
         null_hypothesis=written.null_hypothesis or NullHypothesis(at=test.null_default),
         alternative=written.alternative or ("two_sided" if test.design == "supplied" else None),
-        claim=_claim(written.claim, groups, feature),
+        claim=_claim(written.claim, written.groups, one.feature),
         options=with_defaults(written.options, test),
         purpose=written.purpose or family.purpose,
         reason=written.reason or family.reason,
-        outcome=outcome,
-        groups=groups,
-        feature=feature,
+        outcome=written.outcome,
+        groups=written.groups,
+        feature=one.feature,
     )
     return Hypothesis.model_construct(_fields_set=set(shared), **shared)
 
@@ -202,4 +216,4 @@ def _claim(claim: str | None, groups: Groups | None, feature: str | None) -> str
     return claim and _PLACEHOLDER.sub(lambda match: words.get(match[1]) or match[0], claim)
 
 
-__all__ = ["escape", "expand", "with_features"]
+__all__ = ["WrittenOut", "escape", "expand", "filled", "with_features", "written_out"]

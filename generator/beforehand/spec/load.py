@@ -13,6 +13,7 @@ from beforehand.spec.checks import findings
 from beforehand.spec.expand import expand
 from beforehand.spec.model import Document
 from beforehand.spec.planned import PlannedFamily, Spec
+from beforehand.spec.supportive import supportive_analyses
 
 __all__ = ["PlannedFamily", "Spec", "load_spec", "read_spec"]
 
@@ -59,8 +60,9 @@ def read_spec(source: bytes, path: Path) -> Spec:
     if document is None:
         raise SpecFault(path.name, [_whole(fault) for fault in faults])
     families = expand(document)
-    plan, particulars = canonical_parts(document, families)
-    return Spec(path, source, document, families, plan, particulars, reading.places)
+    supportive = supportive_analyses(document)
+    plan, particulars = canonical_parts(document, families, supportive)
+    return Spec(path, source, document, families, plan, particulars, reading.places, supportive)
 
 
 def _whole(fault: Fault) -> Fault:

@@ -19,6 +19,7 @@ from beforehand.spec.model import (
 )
 from beforehand.spec.places import Path as Place
 from beforehand.spec.places import Places
+from beforehand.terms import SupportiveKind
 
 
 @dataclass(frozen=True)
@@ -45,6 +46,22 @@ class PlannedFamily:
 
 
 @dataclass(frozen=True)
+class PlannedSupportive:
+    """One supportive analysis: the hypothesis whose question it asks, and what is computed instead."""
+
+    id: str
+    """The written id, or `id/member` where it is of a whole family."""
+    asked: str
+    """The id that is written in the spec."""
+    of: str
+    """The hypothesis whose question it is."""
+    analysis: SupportiveKind
+    because: str
+    hypothesis: Hypothesis
+    """What is computed: the hypothesis under this id, with the change made and every default filled in."""
+
+
+@dataclass(frozen=True)
 class Spec:
     """A spec: read, sound, and expanded as far as it can be without the data."""
 
@@ -58,6 +75,8 @@ class Spec:
     particulars: bytes = field(repr=False)
     """What is printed and never a departure, in the same form."""
     places: Places = field(repr=False)
+    supportive: tuple[PlannedSupportive, ...] = ()
+    """Analyses that support a hypothesis and decide nothing, in the order of the spec."""
 
     @property
     def folder(self) -> Path:
@@ -103,7 +122,7 @@ class Spec:
         return next(family for family in self.families if family.id == id)
 
     def place_of(self, id: str) -> Place:
-        """Give the place where a data set, a family or a hypothesis is written; of a made one, its short form."""
+        """Give the place where something with an id is written; of a made hypothesis, that of its short form."""
         for number, data_set in enumerate(self.data):
             if data_set.id == id:
                 return "data", number
@@ -115,6 +134,9 @@ class Spec:
             for entry, hypothesis in enumerate(family.hypotheses or ()):
                 if hypothesis.id == id:
                     return "families", number, "hypotheses", entry
+        for number, supportive in enumerate(self.document.supportive):
+            if id == supportive.id or id.startswith(f"{supportive.id}/"):
+                return "supportive", number
         return ()
 
     def fault(self, path: Place, text: str) -> Fault:

@@ -16,6 +16,7 @@ from beforehand.report.view.model import View
 from beforehand.report.view.promised import promised
 from beforehand.report.view.results import results
 from beforehand.report.view.second import second
+from beforehand.report.view.supportive import supporting_lines
 from beforehand.report.view.warned import departures, warning_section
 
 __all__ = ["View", "view"]
@@ -43,5 +44,5 @@ def view(record: Record, figures: tuple[Figure, ...]) -> View:
         second=second(record),
         checklist=checklist(record),
         methods=methods(record, number, digits),
-        appendix=appendix(record, lines),
+        appendix=appendix(record, lines, supporting_lines(record)),
     )

@@ -4,6 +4,7 @@ from collections.abc import Mapping
 
 from beforehand.record.model import AnalysisSetRecord, ExclusionRecord, MissingRecord, Record, RowsRecord
 from beforehand.report.view import tables
+from beforehand.report.view.described import described
 from beforehand.report.view.headings import HEADINGS
 from beforehand.report.view.model import Analysed, AnalysedData, Cell, Row, Table
 from beforehand.spelling import MINUS, integer
@@ -17,14 +18,15 @@ KNOWN_AT = {"before_allocation": "known before allocation", "after_allocation": 
 
 def analysed(record: Record) -> Analysed:
     """Write the section."""
-    return Analysed(heading=HEADINGS["analysed"], data=tuple(_data(rows) for rows in record.rows))
+    return Analysed(heading=HEADINGS["analysed"], data=tuple(_data(record, rows) for rows in record.rows))
 
 
-def _data(rows: RowsRecord) -> AnalysedData:
+def _data(record: Record, rows: RowsRecord) -> AnalysedData:
     found = [_flow(rows), _overlaps(rows), _missing(rows), _derived(rows)]
     return AnalysedData(
-        title=f"Data set {rows.data}", sentences=_sentences(rows), tables=tuple(table for table in found if table.rows)
-    )
+        title=f"Data set {rows.data}", sentences=_sentences(rows), tables=tuple(table for table in found if table.rows),
+        described=described(record, rows.data),
+    )  # fmt: skip
 
 
 def _sentences(rows: RowsRecord) -> tuple[str, ...]:

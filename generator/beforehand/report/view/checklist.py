@@ -78,7 +78,8 @@ ITEMS = (
     Item("Looks at the data before this one", "ICH E3 11.4.2.3", _never("no history")),
     Item("Departures from the plan", "ICH E6(R3) 3.16.2; ICH E3 9.8", _never("no sealed plan")),
     Item("Answers to objections and cautions", "beforehand", _if(_explained, "warnings")),
-    Item("Sensitivity and subgroup analyses", "ICH E3 11.4.2.8; CONSORT 2010 18", _never()),
+    Item("Sensitivity and subgroup analyses", "ICH E3 11.4.2.8; CONSORT 2010 18",
+         _if(lambda r: bool(r.supportive), "results")),
     Item("Limits of interpretation", "CONSORT 2010 20", _at("methods")),
 )  # fmt: skip
 

@@ -178,6 +178,8 @@ class AnalysedData:
     title: str
     sentences: tuple[str, ...]
     tables: tuple[Table, ...]
+    described: tuple[Table, ...]
+    """What the spec asks to describe."""
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -202,6 +204,8 @@ class ResultsOfFamily:
     estimates: Table
     decisions: Table
     trail: Table
+    supportive: Table
+    """The analyses that support a hypothesis and decide nothing, each below its hypothesis."""
     groups: tuple[Table, ...]
     remarks: tuple[Fact, ...]
     estimate_drawings: tuple[Drawing, ...]

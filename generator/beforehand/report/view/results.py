@@ -19,6 +19,7 @@ from beforehand.report.view.model import (
     Table,
     drawing,
 )
+from beforehand.report.view.supportive import Support, supportive_table, supports_of
 from beforehand.report.view.trail import trail_table
 from beforehand.report.view.written import p_of
 from beforehand.spelling import decimal, exact, integer, short
@@ -28,16 +29,19 @@ from beforehand.terms import STATE_WORDS
 def results(record: Record, lines: tuple[Line, ...], figures: tuple[Figure, ...]) -> ResultsByFamily:
     """Write the section."""
     drawn = {figure.key: drawing(figure) for figure in figures}
+    supports = supports_of(record)
     members: dict[str, list[Line]] = {family.id: [] for family in record.families}
     for line in lines:
         members[line.family.id].append(line)
     return ResultsByFamily(
         heading=HEADINGS["results"],
-        families=tuple(_family(family, tuple(members[family.id]), drawn) for family in record.families),
+        families=tuple(_family(family, tuple(members[family.id]), drawn, supports) for family in record.families),
     )
 
 
-def _family(family: FamilyRecord, every: tuple[Line, ...], drawn: dict[str, Drawing]) -> ResultsOfFamily:
+def _family(
+    family: FamilyRecord, every: tuple[Line, ...], drawn: dict[str, Drawing], supports: dict[str, tuple[Support, ...]]
+) -> ResultsOfFamily:
     lines = foremost(every, IN_FULL)
     return ResultsOfFamily(
         title=f"Family {family.id}",
@@ -49,6 +53,7 @@ def _family(family: FamilyRecord, every: tuple[Line, ...], drawn: dict[str, Draw
         estimates=estimates_table(lines) if lines else tables.empty("Estimates"),
         decisions=decisions_table(lines) if lines else tables.empty("Decisions"),
         trail=trail_table(lines) if lines else tables.empty("Decision trail"),
+        supportive=supportive_table(lines, supports),
         groups=group_tables(lines) if lines else (),
         remarks=_remarks(lines),
         estimate_drawings=_drawings(drawn, f"estimates-{family.id}"),

@@ -4,7 +4,18 @@ import math
 from dataclasses import dataclass
 
 from beforehand.report.view.lines import Line
-from beforehand.spelling import NO_BREAK, between, decimal, decimals_for, exact, p_value, percent, ratio, with_unit
+from beforehand.spelling import (
+    NO_BREAK,
+    between,
+    decimal,
+    decimals_for,
+    exact,
+    integer,
+    p_value,
+    percent,
+    ratio,
+    with_unit,
+)
 from beforehand.terms import State
 
 MET: frozenset[State] = frozenset({"rejected", "rejected_against_claim"})
@@ -38,6 +49,13 @@ def written(line: Line) -> Written:
         decimals = max(decimals, matching)
     texts = {name: decimal(value, decimals) for name, value in values.items()}
     return Written(**texts, standard_error=decimal(error, decimals + 1))
+
+
+def size(line: Line) -> str:
+    """Write the analysed units: "37 + 39" of two groups, or how many there are in all."""
+    if line.count("n_second"):
+        return f"{integer(line.count('n_first'))} + {integer(line.count('n_second'))}"
+    return integer(line.count("n"))
 
 
 def has_estimate(line: Line) -> bool:

@@ -61,7 +61,7 @@ class Block:
 def blocks_of(document: Document, number: int) -> Iterator[Block]:
     """Give what is written in one family."""
     family = document.families[number]
-    known = {data_set.id: columns_of(data_set) for data_set in document.data}
+    known = known_columns(document)
     for entry, written in enumerate(family.written):
         if isinstance(written, WrittenHypothesis):
             path: Path = ("families", number, "hypotheses", entry)
@@ -69,16 +69,28 @@ def blocks_of(document: Document, number: int) -> Iterator[Block]:
         else:
             key = "comparisons" if isinstance(written, Comparisons) else "hypotheses_from"
             path, name = ("families", number, key), f"'{key}' of family '{family.id}'"
-        data_set = _data_set(document, written)
-        yield Block(
-            path=path,
-            name=name,
-            written=written,
-            family=family,
-            data_set=data_set,
-            columns=known.get(data_set.id, {}) if data_set else {},
-            test=_test(written.test),
-        )
+        yield block_of(document, known, family, written, path=path, name=name)
+
+
+def block_of(
+    document: Document, known: dict[str, dict[str, Known]], family: Family, written: Written, *, path: Path, name: str
+) -> Block:
+    """Put what is written together with its data and its test; ``known`` are the columns of every data set."""
+    data_set = data_set_of(document, written.data)
+    return Block(
+        path=path,
+        name=name,
+        written=written,
+        family=family,
+        data_set=data_set,
+        columns=known.get(data_set.id, {}) if data_set else {},
+        test=_test(written.test),
+    )
+
+
+def known_columns(document: Document) -> dict[str, dict[str, Known]]:
+    """Give what is known of the columns of every data set, by its id."""
+    return {data_set.id: columns_of(data_set) for data_set in document.data}
 
 
 def _test(word: str) -> StatisticalTest[Any] | None:
@@ -87,10 +99,11 @@ def _test(word: str) -> StatisticalTest[Any] | None:
     return None
 
 
-def _data_set(document: Document, written: Written) -> DataSet | None:
-    if written.data is None:
+def data_set_of(document: Document, named: str | None) -> DataSet | None:
+    """Give the data set that is named, or the only one; None where it can't be told."""
+    if named is None:
         return document.data[0] if len(document.data) == 1 else None
-    return next((data_set for data_set in document.data if data_set.id == written.data), None)
+    return next((data_set for data_set in document.data if data_set.id == named), None)
 
 
 def promise_of(document: Document, family: Family) -> Promise | StudyPromise:

@@ -4,31 +4,55 @@ from collections.abc import Iterator
 
 from beforehand.spec.checks.blocks import Block
 from beforehand.spec.checks.data_sets import column, condition
+from beforehand.spec.expressions import Known
 from beforehand.spec.hints import nearest
-from beforehand.spec.model import Comparisons, Document, EachWith, EventOutcome, Groups, HypothesesFrom, PairOutcome
+from beforehand.spec.model import (
+    Comparisons,
+    DataSet,
+    Description,
+    Document,
+    EachWith,
+    EventOutcome,
+    Groups,
+    HypothesesFrom,
+    PairOutcome,
+    PerHypothesis,
+)
 from beforehand.spec.places import Finding, Path
 
 
 def check_data(block: Block, document: Document) -> Iterator[Finding]:
     """Check that the data set can be told, and the rows in it."""
-    ids = [data_set.id for data_set in document.data]
-    if block.data_set is None:
-        written = block.written.data
-        if written is None:
-            yield Finding(block.path, f"{block.name} needs the key 'data', because there are several data sets")
+    yield from check_rows(block.written, block.data_set, block.columns, document, path=block.path, name=block.name)
+
+
+def check_rows(
+    written: PerHypothesis | Description,
+    data_set: DataSet | None,
+    columns: dict[str, Known],
+    document: Document,
+    *,
+    path: Path,
+    name: str,
+) -> Iterator[Finding]:
+    """Check the data set, the condition and the analysis set that something is about."""
+    if data_set is None:
+        if written.data is None:
+            yield Finding(path, f"{name} needs the key 'data', because there are several data sets")
         else:
+            ids = [one.id for one in document.data]
             yield Finding(
-                (*block.path, "data"), f"{block.name} is about the data set '{written}'. {nearest(written, ids)}"
+                (*path, "data"), f"{name} is about the data set '{written.data}'. {nearest(written.data, ids)}"
             )
         return
-    if block.written.where:
-        yield from condition(block.written.where, block.columns, (*block.path, "where"), block.name)
-    sets = [entry.id for entry in block.data_set.analysis_sets]
-    if block.written.analysis_set is not None and block.written.analysis_set not in sets:
+    if written.where:
+        yield from condition(written.where, columns, (*path, "where"), name)
+    sets = [entry.id for entry in data_set.analysis_sets]
+    if written.analysis_set is not None and written.analysis_set not in sets:
         yield Finding(
-            (*block.path, "analysis_set"),
-            f"{block.name} is about the analysis set '{block.written.analysis_set}', which data set "
-            f"'{block.data_set.id}' does not have. {nearest(block.written.analysis_set, sets)}",
+            (*path, "analysis_set"),
+            f"{name} is about the analysis set '{written.analysis_set}', which data set '{data_set.id}' does not have. "
+            f"{nearest(written.analysis_set, sets)}",
         )
 
 

@@ -22,7 +22,7 @@ def check_repeats(document: Document, number: int) -> Iterator[Finding]:
     family = document.families[number]
     seen: dict[bytes, str] = {}
     for place, hypothesis in enumerate(family.hypotheses or ()):
-        first = seen.setdefault(_meaning(hypothesis), hypothesis.id)
+        first = seen.setdefault(meaning(hypothesis), hypothesis.id)
         if first != hypothesis.id:
             yield Finding(
                 ("families", number, "hypotheses", place),
@@ -30,8 +30,8 @@ def check_repeats(document: Document, number: int) -> Iterator[Finding]:
             )
 
 
-def _meaning(hypothesis: WrittenHypothesis) -> bytes:
-    """Write what is computed; first and second swapped with the side mirrored is the same question.
+def meaning(hypothesis: WrittenHypothesis) -> bytes:
+    """Write what a hypothesis computes; first and second swapped with the side mirrored is the same question.
 
     An association is the same whichever column is named first.
     """

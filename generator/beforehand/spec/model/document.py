@@ -1,12 +1,19 @@
 """The keys of the whole file, of the study, and of what stands beside the families."""
 
-from typing import Annotated, Literal
+from typing import Annotated
 
 from pydantic import ConfigDict, Field
 
 from beforehand.spec.model.data import DataSet
 from beforehand.spec.model.families import Family, StudyPromise
-from beforehand.spec.model.hypotheses import Groups, MissingValues, NullHypothesis, Outcome, Setting
+from beforehand.spec.model.hypotheses import (
+    Groups,
+    MarginBasis,
+    MissingValues,
+    NullHypothesis,
+    Outcome,
+    Setting,
+)
 from beforehand.spec.model.scheme import Graph, Looks
 from beforehand.spec.model.words import (
     PARTICULAR,
@@ -22,7 +29,7 @@ from beforehand.spec.model.words import (
     StatisticalTestWord,
     Version,
 )  # fmt: skip
-from beforehand.terms import Alternative, Intent
+from beforehand.terms import Alternative, Intent, SupportiveKind
 
 HIGHEST_SEED = 2**53 - 1  # whole numbers above are not exact in JSON
 
@@ -57,8 +64,10 @@ class Change(Keys):
     """Other groups."""
     null_hypothesis: NullHypothesis | None = None
     """Another null hypothesis."""
+    margin_basis: MarginBasis | None = None
+    """Where another margin comes from."""
     alternative: Alternative | None = None
-    """Another side."""
+    """Another side: one instead of both, or both instead of one."""
     data: Reference | None = None
     """Another data set."""
     where: Condition | None = None
@@ -79,12 +88,12 @@ class Supportive(Keys):
     id: Id
     """The name of the analysis."""
     of: Reference
-    """The hypothesis whose question it is."""
+    """The hypothesis whose question it is; or a family, for one analysis of each of its hypotheses."""
     change: Change
-    """What is done another way; everything else stays."""
+    """What is done another way, in place of what the hypothesis says; everything else stays."""
     because: Prose
     """Why it is asked another way."""
-    analysis: Literal["sensitivity", "supplementary", "subgroup"]
+    analysis: SupportiveKind
     """What kind of analysis this is."""
 
 
@@ -94,9 +103,9 @@ class Description(Keys):
     id: Id
     """The name of the table."""
     columns: Names
-    """The columns that are described."""
+    """The columns that are described: numbers, counts, dates, and text with declared levels."""
     by: Name | None = None
-    """The column whose levels stand beside one another."""
+    """The column whose levels stand beside one another; it needs declared levels."""
     data: Reference | None = None
     """The data set; needed when there are several."""
     where: Condition | None = None
