@@ -3,6 +3,7 @@
 import csv
 import io
 import json
+import re
 import subprocess
 import sys
 from collections.abc import Callable
@@ -15,6 +16,9 @@ from small_study import SPEC, write_study
 import beforehand
 from beforehand.record.canonical import sha256
 from beforehand.record.manifest import manifest
+from beforehand.report.figures import graph
+from beforehand.report.fonts import register_in_matplotlib
+from beforehand.report.view import view
 
 SERIAL = "  across_families: serial\n  order: [strength, second]\n"
 IDS = ["strength/fibre-plain", "strength/foam-plain", "shrinkage_fibre", "cracks_fibre"]
@@ -197,3 +201,49 @@ def test_success_by_several_rejections_is_judged_and_told(tmp_path: Path) -> Non
 
 def run_p(record: Any, name: str) -> float:
     return float(record.results.p[record.results.id.index(name)])
+
+
+WORDS = {
+    "parallel": [
+        "each at the part of the level that the rejections in the families before it have set free",
+        "tested at 0.00015",
+        "0.00015, which is 0.25 of 0.0006",
+        "Success takes at least 2 of its 2 null hypotheses to be false: not reached, joint p 0.0006358 > 0.0006.",
+        "enough is held from 2.645 × 10⁻⁷ on",
+    ],
+    "shares": ["0.0016, which is 0.8 of 0.002", "divided by the share 0.2: 0.01631"],
+    "graph of families": [
+        "when every hypothesis of it is rejected, it passes its share on",
+        "0.00048, which is 0.8 of 0.0006",
+        "enough is held from 3.306 × 10⁻⁷ on",
+    ],
+    "graph of hypotheses": [
+        "a rejected one passes its share on along arrows",
+        "No claim is made, because no share of the level reached it from strength/foam-plain",
+        "1.016 × 10⁻¹¹ × 1 = 1.016 × 10⁻¹¹; step 2 counts: 0.0006358",
+        "The level rises from 0; a hypothesis falls when its p meets the share of the level that it holds",
+    ],
+}
+
+
+def test_the_report_says_how_the_level_was_shared(finished: tuple[str, Any]) -> None:
+    name, run = finished
+    words = repr(view(run.record, ())).replace("\\xa0", " ")
+    assert [phrase for phrase in WORDS[name] if phrase not in words] == []
+    assert "nan" not in re.findall(r"[a-z]+", words)
+
+
+def test_the_figure_is_drawn_from_what_the_record_holds(finished: tuple[str, Any]) -> None:
+    name, run = finished
+    assert ("graph" in run.record.drawn) == name.startswith("graph")
+    if "graph" in run.record.drawn:
+        register_in_matplotlib()
+        (figure,) = graph.draw(run.record.drawn["graph"])
+        assert len(figure.table) == 1 + (4 if name == "graph of hypotheses" else 2)
+
+
+def test_stairs_stand_at_the_level_of_the_family(finished: tuple[str, Any]) -> None:
+    name, run = finished
+    thresholds = [point["threshold"] for point in run.record.drawn["staircase"]["second"]["points"]]
+    by_bonferroni = STUDIES[name][2]["second"]
+    assert thresholds == [None if by_bonferroni is None else pytest.approx(by_bonferroni / 2)] * 2

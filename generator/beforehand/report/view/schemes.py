@@ -95,6 +95,6 @@ def _share(family: FamilyRecord) -> str:
 def waiting(line: Line) -> str:
     """Say why a hypothesis was not tested."""
     if line.hypothesis.waits_for:
-        return f"no share of the level reached it: {' and '.join(line.hypothesis.waits_for)} kept theirs"
+        return f"no share of the level reached it from {' or '.join(line.hypothesis.waits_for)}"
     closed = line.family.closed_by
     return f"the gate of family {closed} stayed closed" if closed else "its gate stayed closed"
