@@ -9,8 +9,8 @@ from beforehand.data.samples import unlabelled
 from beforehand.data.sets import rows_of as chosen_rows
 from beforehand.hypothesis_tests.contract import STATISTICAL_TESTS
 from beforehand.hypothesis_tests.nulls import Null, alternative_in_symbols, null_in_symbols
-from beforehand.multiplicity.contract import PROCEDURES
 from beforehand.multiplicity.decision import is_rejected
+from beforehand.planning.reaching import first_thresholds
 from beforehand.spec.model import Description, Hypothesis
 from beforehand.spec.planned import PlannedFamily, Spec
 
@@ -99,7 +99,10 @@ def rows_of(dataset: Dataset, name: str) -> dict[str, Any]:
 
 
 def _planned(spec: Spec, dataset: Dataset | None) -> tuple[PlannedHypothesis, ...]:
-    return tuple(_one(family, member, dataset) for family in spec.families for member in family.members)
+    thresholds = first_thresholds(spec)
+    return tuple(
+        _one(family, member, dataset, thresholds[member.id]) for family in spec.families for member in family.members
+    )
 
 
 def _beside(spec: Spec, dataset: Dataset | None) -> tuple[PlannedBeside, ...]:
@@ -126,7 +129,9 @@ def _described(spec: Spec, asked: Description, dataset: Dataset | None) -> tuple
     return (int(chosen_rows(table, asked, what=f"description '{asked.id}'").rows.sum()),)
 
 
-def _one(family: PlannedFamily, hypothesis: Hypothesis, dataset: Dataset | None) -> PlannedHypothesis:
+def _one(
+    family: PlannedFamily, hypothesis: Hypothesis, dataset: Dataset | None, first_threshold: float
+) -> PlannedHypothesis:
     test, written = STATISTICAL_TESTS[hypothesis.test], hypothesis.null_hypothesis
     null = Null(written.form, tuple(float(margin) for margin in written.margins))
     known = unlabelled(dataset, hypothesis) if dataset else None
@@ -142,8 +147,6 @@ def _one(family: PlannedFamily, hypothesis: Hypothesis, dataset: Dataset | None)
         )
         one_sided = hypothesis.side != "two_sided" or written.form == "outside"
         smallest = min(1.0, smallest * _reading(family, one_sided=one_sided))
-    # the member with the smallest p of its family, the others at p = 1: the first step of any procedure
-    steps = PROCEDURES[family.procedure].steps([0.0] + [1.0] * (family.planned - 1), **family.procedure_options)
     return PlannedHypothesis(
         id=hypothesis.id,
         family=family.id,
@@ -152,7 +155,7 @@ def _one(family: PlannedFamily, hypothesis: Hypothesis, dataset: Dataset | None)
         alternative=alternative_in_symbols(test, null, hypothesis.side),
         sizes=known.sizes if known else (),
         smallest_p=smallest,
-        first_threshold=float(family.promise.level) / float(steps.factor[0]),
+        first_threshold=first_threshold,
     )
 
 

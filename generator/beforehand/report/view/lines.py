@@ -30,7 +30,7 @@ class Line:
     family: FamilyRecord
     intent: Intent
     values: dict[str, Any]
-    scheme: AcrossFamilies
+    scheme: AcrossFamilies = "separate"
     """How its family shares a level with others: separate, where it stands apart."""
 
     @property
