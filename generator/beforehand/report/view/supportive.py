@@ -77,7 +77,7 @@ def supportive_table(lines: tuple[Line, ...], supports: dict[str, tuple[Support,
         return tables.empty("Supportive analyses")
     every = tuple(entry.line for entry in entries)
     numbers = [written(line) for line in every]
-    levels = {percent(level) for line in every if not math.isnan(level := line.number("interval_level"))}
+    levels = {percent(line.number("interval_level")) for line in every if not math.isnan(line.number("interval_level"))}
     level = f", {levels.pop()}" if len(levels) == 1 else ""
     first = (
         Head(text="Analysis", rows="2"), Head(text="n", rows="2", style="number"),
