@@ -135,3 +135,36 @@ def test_weights_and_order_without_the_missing_ones(evidence: Make) -> None:
     family = replace(study.families[0], given=given)
     without = given_to(family, ["main/wear", "main/heat"])
     assert without == {"weights": [0.5 / 0.75, 0.25 / 0.75], "positions": [1, 0], "df": 6}
+
+
+SHARES = "{criterion: familywise_error_rate, level: 0.05, across_families: shares}"
+GRAPH = "{criterion: familywise_error_rate, level: 0.05, across_families: graph}"
+ARROWS = """
+graph:
+  nodes_are: hypotheses
+  start: {main/wear: 0.5, main/leaks: 0.5}
+  pass:
+    - {from: main/leaks, to: main/heat, share: 1}
+    - {from: main/wear, to: main/heat, share: 1}
+"""
+
+
+def test_decisions_are_those_at_the_level_of_the_family(evidence: Make) -> None:
+    # 1 / 35 = 0.0286 meets 0.05, and not the half of it that the family has as its share
+    families = FAMILIES.replace("procedure: bonferroni", "procedure: bonferroni\n  share: 0.5") + SECOND.replace(
+        "procedure: bonferroni", "procedure: bonferroni\n  share: 0.5"
+    )
+    study = evidence(bearings(APART, [0] * 8, [""] * 8), columns=COLUMNS, families=families, promise=SHARES)
+    (main, _) = planned_test_without_result(study)
+    assert "No decision would differ had they been left out." in main.number
+
+
+def test_a_node_of_a_graph_keeps_its_share(evidence: Make) -> None:
+    families = FAMILIES.replace("procedure: bonferroni", "procedure: graph")
+    table = bearings(APART, [0] * 8, APART)
+    study = evidence(table, columns=COLUMNS, families=families, promise=GRAPH, answers=ARROWS)
+    (main,) = planned_test_without_result(study)
+    assert main.number == (
+        "m = 3 as planned and 2 as computed; the missing ones are counted with p = 1. Each keeps the share of the "
+        "level that it holds, and passes none of it on."
+    )

@@ -1,5 +1,6 @@
 """Planned hypotheses that have no result."""
 
+import math
 from collections.abc import Iterator
 from typing import Any
 
@@ -81,6 +82,8 @@ def _number(evidence: Evidence, family: FamilyRecord, missing: list[str]) -> str
     counted += "are counted with p = 1."
     if not family.tested:
         return f"{counted} The family was not tested, so that no decision rests on m."
+    if _adjusted_by_scheme(evidence, family):
+        return f"{counted} Each keeps the share of the level that it holds, and passes none of it on."
     without = _rejected_without(evidence, family)
     differ = [member for member, rejected in without.items() if rejected != _rejected(evidence, family, member)]
     if not differ:
@@ -89,7 +92,16 @@ def _number(evidence: Evidence, family: FamilyRecord, missing: list[str]) -> str
 
 
 def _rejected(evidence: Evidence, family: FamilyRecord, member: str) -> bool:
-    return is_rejected(float(evidence.results.p_family[evidence.row[member]]), family.level)
+    return is_rejected(float(evidence.results.p_family[evidence.row[member]]), _level(family))
+
+
+def _level(family: FamilyRecord) -> float:
+    return family.level if family.local_level is None else family.local_level
+
+
+def _adjusted_by_scheme(evidence: Evidence, family: FamilyRecord) -> bool:
+    """Whether the members of a tested family have no adjusted p of the family's own."""
+    return all(math.isnan(evidence.results.p_family[evidence.row[member]]) for member in family.members)
 
 
 def _rejected_without(evidence: Evidence, family: FamilyRecord) -> dict[str, bool]:
@@ -99,7 +111,7 @@ def _rejected_without(evidence: Evidence, family: FamilyRecord) -> dict[str, boo
         return {}
     p = evidence.results.p_entered[[evidence.row[member] for member in members]]
     adjusted = PROCEDURES[family.procedure](p, **given_to(family, members))
-    return dict(zip(members, is_rejected(adjusted, family.level).tolist(), strict=True))
+    return dict(zip(members, is_rejected(adjusted, _level(family)).tolist(), strict=True))
 
 
 def given_to(family: FamilyRecord, members: list[str]) -> dict[str, Any]:
@@ -121,8 +133,10 @@ def given_to(family: FamilyRecord, members: list[str]) -> dict[str, Any]:
 def _gates(evidence: Evidence, family: FamilyRecord) -> str:
     """Say whether the missing results alone keep a gate closed."""
     behind = [f"'{other.id}'" for other in evidence.families if other.closed_by == family.id]
+    if not behind:
+        return ""
     without = _rejected_without(evidence, family)
     against = any(evidence.results.side_agrees[evidence.row[member]] == "no" for member in without)
-    if not behind or against or not without or not all(without.values()):
+    if against or not without or not all(without.values()):
         return ""
     return f"They alone keep the gate to {listed(behind, shown=SHOWN)} closed."
