@@ -10,7 +10,7 @@ PACKAGE = Path(__file__).parents[1] / "generator" / "beforehand"
 
 FLOORS = {
     "terms": 0, "errors": 0, "spelling": 0, "catalogue": 0,
-    "distributions": 1,
+    "distributions": 1, "resampling": 1,
     "hypothesis_tests": 2, "multiplicity": 2,
     "spec": 3, "record": 4, "data": 5, "snooping": 6, "analysis": 7, "planning": 8, "report": 8, "study": 9, "cli": 10,
 }  # fmt: skip

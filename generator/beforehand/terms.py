@@ -38,7 +38,7 @@ EvidenceFrom = Literal["record", "pattern"]
 # How the values of a test reach it, and on which scale its estimate lives.
 Design = Literal["one_sample", "two_groups", "contrast", "pairs", "association", "supplied"]
 OutcomeKind = Literal["number", "count", "event", "supplied"]
-Scale = Literal["difference", "ratio", "location", "correlation", "supplied"]
+Scale = Literal["difference", "ratio", "location", "probability", "correlation", "supplied"]
 
 # CDISC Analysis Results Standard, controlled terms for the purpose and the reason of an analysis.
 Purpose = Literal["PRIMARY OUTCOME MEASURE", "SECONDARY OUTCOME MEASURE", "EXPLORATORY OUTCOME MEASURE"]

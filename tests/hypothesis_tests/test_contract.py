@@ -122,7 +122,8 @@ def computable(
 
 
 def mirrored(entry: Entry, null_value: float) -> float:
-    return 1 / null_value if entry.scale == "ratio" else -null_value
+    """The same null value with the groups swapped: 0 and, for a probability, 1/2 stay what they are."""
+    return 1 / null_value if entry.scale == "ratio" else 2 * entry.null_default - null_value
 
 
 @pytest.mark.parametrize("name", STATISTICAL_TESTS)
@@ -202,7 +203,7 @@ def test_swapped_groups_mirror(name: str) -> None:
         if entry.scale == "ratio":
             ends = [1 / end if end else math.inf for end in (here.estimate, here.upper, here.lower)]
         else:
-            ends = [-here.estimate, -here.upper, -here.lower]
+            ends = [mirrored(entry, end) for end in (here.estimate, here.upper, here.lower)]
         assert (there.estimate, there.lower, there.upper) == pytest.approx(tuple(ends), rel=NEARLY)
 
 
@@ -211,10 +212,10 @@ def test_swapped_groups_mirror(name: str) -> None:
 def test_another_unit_moves_only_the_numbers_that_have_one(name: str, scale: float) -> None:
     entry = entry_of(name)
     for samples, null_value in computable(entry, 5):
-        unit = 1.0 if entry.scale == "ratio" else scale
+        unit = scale if entry.scale in ("difference", "location") else 1.0
         here = result(entry, samples, null_value=null_value)
         there = result(entry, tuple(sample * scale for sample in samples), null_value=null_value * unit)
-        assert (there.p, there.statistic) == (here.p, here.statistic)
+        assert (there.p, repr(there.statistic)) == (here.p, repr(here.statistic))  # repr: nan is not equal to itself
         for number in ("estimate", "lower", "upper"):
             assert getattr(there, number) == pytest.approx(getattr(here, number) * unit, rel=NEARLY)
 
@@ -301,7 +302,7 @@ def test_an_end_is_where_p_crosses_the_level(name: str) -> None:
         found = result(entry, samples, confidence=0.9)
         step = 1e-7 * (found.upper - found.lower)
         for end, outwards in ((found.lower, -1), (found.upper, 1)):
-            if math.isfinite(end) and end != 0 and math.isfinite(step):
+            if math.isfinite(end) and end not in (entry.null_between or (0.0,)) and math.isfinite(step):
                 assert result(entry, samples, null_value=end + outwards * step).p <= 0.1
                 assert result(entry, samples, null_value=end - outwards * step).p > 0.1
 

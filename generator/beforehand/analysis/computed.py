@@ -46,7 +46,7 @@ def compute(family: PlannedFamily, hypothesis: Hypothesis, dataset: Dataset) -> 
     asked = _Asked(hypothesis, test, samples)
     result = asked.result(confidence)
     matches = PROCEDURES[family.procedure].intervals == "bonferroni" and family.sure_share is not None
-    shares = matches and test.design != "supplied"
+    shares = matches and test.design != "supplied" and test.interval_inverts_p
     shared = Reading(reading.level * (family.sure_share or 1.0), reading.level_is).confidence(family.planned)
     matching = asked.result(shared) if shares else None
     p_entered, entered_as = _entered(asked, result, reading)

@@ -1,6 +1,7 @@
 """From what was read and computed to the parts of the record."""
 
 import math
+from collections import Counter
 from dataclasses import replace
 from typing import Any
 
@@ -41,7 +42,7 @@ from beforehand.record.model import (
 )
 from beforehand.spec.model import Promise
 from beforehand.spec.planned import PlannedFamily, Spec
-from beforehand.terms import State
+from beforehand.terms import STATE_WORDS
 
 MISSING_NUMBER = math.nan
 MOVING_LEVEL = (
@@ -145,9 +146,8 @@ def rows_record(table: Table) -> RowsRecord:
 def family_record(judged: JudgedFamily) -> FamilyRecord:
     """Say what a family promised, and what came of it."""
     family, procedure, decision = judged.entered.family, judged.entered.procedure, judged.decision
-    states: dict[State, int] = {}
-    for state in decision.states:
-        states[state] = states.get(state, 0) + 1
+    counts = Counter(decision.states)
+    states = {state: counts[state] for state in STATE_WORDS if counts[state]}
     local, level = decision.local_level, judged.entered.level
     return FamilyRecord(
         id=family.id,
@@ -165,6 +165,7 @@ def family_record(judged: JudgedFamily) -> FamilyRecord:
         success=SuccessRecord(**vars(judged.success)) if judged.success else None,
         strong=procedure.strong,
         valid_under=procedure.valid_under,
+        joint_intervals=procedure.intervals == "critical_value",
         no_intervals_because=procedure.no_intervals_because or ("" if family.sure_share else MOVING_LEVEL),
         planned=family.planned,
         computed=int(judged.entered.has_result.sum()),
@@ -201,6 +202,9 @@ def hypothesis_record(
     """Put one hypothesis, or a supportive analysis of one, into words."""
     hypothesis, test, result = computed.hypothesis, computed.test, computed.result
     unit = unit_of(spec, hypothesis, test)
+    # under a one-sided level a two-sided test is judged on the side of its claim alone
+    one_side = {"alternative": hypothesis.claim_direction} if computed.entered_as == "claim side" else {}
+    judged = hypothesis.model_copy(update=one_side)
     pair = sides(hypothesis)
     missing, basis = hypothesis.missing_values, hypothesis.margin_basis
     return HypothesisRecord(
@@ -208,11 +212,12 @@ def hypothesis_record(
         family=family.id,
         label=label,
         claim=hypothesis.claim or "",
-        null=null_in_symbols(test, computed.null, hypothesis.side),
-        alternative=alternative_in_symbols(test, computed.null, hypothesis.side),
-        null_in_words=null_in_words(hypothesis, test, unit),
-        alternative_in_words=alternative_in_words(hypothesis, test, unit),
-        side=hypothesis.side,
+        null=null_in_symbols(test, computed.null, judged.side),
+        alternative=alternative_in_symbols(test, computed.null, judged.side),
+        null_in_words=null_in_words(judged, test, unit),
+        alternative_in_words=alternative_in_words(judged, test, unit),
+        side=judged.side,
+        null_form=computed.null.form,
         claim_direction=hypothesis.claim_direction,
         null_values=computed.null.values,
         test=test.name,
@@ -262,17 +267,22 @@ def _summaries(computed: Computed) -> tuple[GroupSummary, ...]:
     test, samples = computed.test, computed.samples
     if test.design == "supplied":
         return ()
-    names = sides(computed.hypothesis) or ("all",)
+    names = sides(computed.hypothesis) or ("all",)  # a contrast has other groups too, described where they are compared
     # a pair that lacks one of its values is missing on both sides
     gone = samples.missing if len(samples.missing) == len(samples.arrays) else samples.missing * len(samples.arrays)
     found = tuple(
         _summary(name, values, missing, events=test.outcome in ("event", "count"))
-        for name, values, missing in zip(names, samples.arrays, gone, strict=True)
+        for name, values, missing in zip(names, samples.arrays[: len(names)], gone[: len(names)], strict=True)
     )
     amounts = samples.beside.get("exposure") or samples.beside.get("time")
     if not amounts:
         return found
     return tuple(replace(one, exposure=float(amount.sum())) for one, amount in zip(found, amounts, strict=True))
+
+
+def _held(value: Any) -> float | None:
+    """Give a statistic as JSON can hold it."""
+    return float(value) if math.isfinite(value) else None
 
 
 def _summary(name: str, values: Any, missing: int, *, events: bool) -> GroupSummary:
@@ -281,13 +291,21 @@ def _summary(name: str, values: Any, missing: int, *, events: bool) -> GroupSumm
         return GroupSummary(group=name, n=n, missing=missing, events=int(values.sum()))
     if not n:
         return GroupSummary(group=name, n=0, missing=missing)
-    lower, median, upper = (float(q) for q in np.quantile(values, [0.25, 0.5, 0.75]))
+    with np.errstate(over="ignore", invalid="ignore"):  # of numbers near the largest, some statistics can't be held
+        mean, sd, lower, median, upper = (
+            _held(value)
+            for value in (
+                values.mean(),
+                values.std(ddof=1) if n > 1 else math.nan,
+                *np.quantile(values, [0.25, 0.5, 0.75]),
+            )
+        )
     return GroupSummary(
         group=name,
         n=n,
         missing=missing,
-        mean=float(values.mean()),
-        sd=float(values.std(ddof=1)) if n > 1 else None,
+        mean=mean,
+        sd=sd,
         median=median,
         lower_quartile=lower,
         upper_quartile=upper,

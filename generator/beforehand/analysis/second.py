@@ -15,8 +15,8 @@ from beforehand.analysis.computed import EQUAL_SIDES
 from beforehand.analysis.second_beside import complete_rows, taken_beside
 from beforehand.data.evaluate import evaluated
 from beforehand.data.table import Table
-from beforehand.hypothesis_tests.contract import NotComputed, Outcome, Result, StatisticalTest
-from beforehand.spec.model import Event, EventOutcome, HypothesesFrom, Hypothesis, PairOutcome
+from beforehand.hypothesis_tests.contract import STATISTICAL_TESTS, NotComputed, Outcome, Result, StatisticalTest
+from beforehand.spec.model import Event, EventOutcome, Groups, HypothesesFrom, Hypothesis, PairOutcome
 from beforehand.spec.planned import PlannedFamily
 
 Ask = Callable[[float, str], Result]
@@ -113,10 +113,20 @@ def _take(family: PlannedFamily, hypothesis: Hypothesis, table: PlainTable) -> _
         return _Taken(_aligned(_pairs(hypothesis, table, rows, values)))
     rows = complete_rows(hypothesis, values, table.column, rows)
     group = table.column(groups.column) if groups else []
-    levels = (groups.first, groups.second) if groups else ()
+    levels = _levels(groups, hypothesis, table) if groups else ()
     sides = [[row for row in rows if group[row] == level] for level in levels] or [rows]
     samples = tuple(_array([values[row] for row in side]) for side in sides)
     return _Taken(samples, taken_beside(hypothesis, table.column, sides))
+
+
+def _levels(groups: Groups, hypothesis: Hypothesis, table: PlainTable) -> list[str]:
+    """Name the groups in the order in which the test takes them."""
+    levels = [groups.first, groups.second]
+    if STATISTICAL_TESTS[hypothesis.test].design == "contrast":
+        data = table.table.declared
+        column = data.derive.get(groups.column) or data.columns[groups.column]
+        levels += [level for level in column.levels or () if level not in levels]
+    return levels
 
 
 def _pairs(hypothesis: Hypothesis, table: PlainTable, rows: list[int], values: list[Any]) -> list[tuple[Any, Any]]:

@@ -12,6 +12,7 @@ ABOUT = {
     "ratio": ("over", " / "),
     "difference": ("minus", f" {MINUS} "),
     "location": ("minus", f" {MINUS} "),
+    "probability": ("against", " against "),
     "correlation": ("and", " and "),
 }
 

@@ -24,8 +24,9 @@ class Samples:
     """What a test gets, and how it came about."""
 
     arrays: tuple[NDArray[Any], ...]
-    """As the test takes them: the values; first, second (groups, or pairs in the order of their key); or p, estimate,
-    lower, upper of one row, NaN where one is not supplied. Events are booleans."""
+    """As the test takes them: the values; first, second (groups, or pairs in the order of their key); for a contrast
+    every other group of the column too; or p, estimate, lower, upper of one row, NaN where one is not supplied. Events
+    are booleans."""
     n: tuple[int, ...]
     """Units in each group, first group first; for pairs, the number of pairs; () where the numbers are supplied."""
     rows_considered: int
@@ -40,20 +41,17 @@ class Samples:
 
 @dataclass(frozen=True, kw_only=True)
 class Unlabelled:
-    """What may be known of a hypothesis before its outcomes meet its groups."""
+    """What may be known of a hypothesis before its outcomes meet its groups: no value of an outcome."""
 
     sizes: tuple[int, ...]
     """Units with an outcome in each group; for pairs, the number of complete pairs."""
-    pooled: NDArray[Any]
-    """The outcomes of all groups together, ascending; for pairs, the sizes of the differences from the null value; for
-    an association both columns, each ascending; where there are strata, ascending in one stratum after the other."""
     beside: dict[str, Any] = field(default_factory=dict)
     """What the test takes beside the outcome, group by group: nothing of it is an outcome."""
 
 
 @dataclass(frozen=True)
 class _Sides:
-    """The rows of a hypothesis before any is dropped: of one sample, or of first and second."""
+    """The rows of a hypothesis before any is dropped: of one sample, or of first and second (and the others)."""
 
     positions: tuple[Positions, ...]
     columns: tuple[Column, ...]
@@ -107,25 +105,18 @@ def take(dataset: Dataset, hypothesis: Hypothesis) -> Samples:
 def unlabelled(dataset: Dataset, hypothesis: Hypothesis) -> Unlabelled:
     """Give what `check` may know of a hypothesis; raises the faults of ``take`` that need no outcome.
 
-    Of the outcomes it joins with the groups only whether they are missing, never a value.
+    Of the outcomes it joins with the groups only whether they are missing, never a value: even pooled over the two
+    groups of a pair, values would tell the groups of a third apart.
     """
     test, table = STATISTICAL_TESTS[hypothesis.test], dataset.tables[hypothesis.data]
     if test.design == "supplied":
-        return Unlabelled(sizes=(), pooled=np.empty(0))
+        return Unlabelled(sizes=())
     sides = _sides(table, hypothesis)
-    complete = sides.complete
-    if test.design == "association":
-        return Unlabelled(sizes=(complete[0].size,), pooled=np.sort(np.stack(complete)))
     if sides.paired:
-        null_value = hypothesis.null_hypothesis.margins[0]
-        differences = np.abs(complete[0] - complete[1] - null_value)
-        return Unlabelled(sizes=(differences.size,), pooled=np.sort(differences))
+        return Unlabelled(sizes=(sides.rows[0].size,))
     taken = beside(table, hypothesis, sides.rows)
     taken.pop("time", None)  # it belongs to the outcome
-    pooled = np.concatenate(complete)
-    strata = np.concatenate(taken["strata"]) if "strata" in taken else np.zeros(pooled.size)
-    order = np.lexsort((pooled, strata))
-    return Unlabelled(sizes=tuple(side.size for side in complete), pooled=pooled[order], beside=taken)
+    return Unlabelled(sizes=tuple(rows.size for rows in sides.rows), beside=taken)
 
 
 def _sides(table: Table, hypothesis: Hypothesis) -> _Sides:
@@ -141,13 +132,12 @@ def _sides(table: Table, hypothesis: Hypothesis) -> _Sides:
         positions, columns = (np.flatnonzero(rows),), (_outcome(table, outcome),)
     else:
         group = table.columns[groups.column]
-        first, second = (
-            np.flatnonzero(rows & (group.values == label) & ~group.missing) for label in (groups.first, groups.second)
-        )
+        labels = (groups.first, groups.second, *_other_groups(table, hypothesis))
+        positions = tuple(np.flatnonzero(rows & (group.values == label) & ~group.missing) for label in labels)
         paired = hypothesis.matched_by is not None
         if paired:
-            first, second = _matched(table, first, second, hypothesis)
-        positions, columns = (first, second), (_outcome(table, outcome),) * 2
+            positions = _matched(table, positions[0], positions[1], hypothesis)
+        columns = (_outcome(table, outcome),) * len(positions)
     for side in positions:
         refuse_out_of_range(table, hypothesis, side)
     lacking = tuple(without(table, hypothesis, side) for side in positions)
@@ -155,6 +145,15 @@ def _sides(table: Table, hypothesis: Hypothesis) -> _Sides:
     if STATISTICAL_TESTS[hypothesis.test].independent_units:
         _refuse_repeated_units(table, sides, hypothesis)
     return sides
+
+
+def _other_groups(table: Table, hypothesis: Hypothesis) -> tuple[str, ...]:
+    """Name the other groups of the column, whose values a contrast takes too: observed or not, as they are declared."""
+    groups = hypothesis.groups
+    if groups is None or STATISTICAL_TESTS[hypothesis.test].design != "contrast":
+        return ()
+    declared = table.declared.columns.get(groups.column) or table.declared.derive[groups.column]
+    return tuple(level for level in declared.levels or () if level not in (groups.first, groups.second))
 
 
 def _outcome(table: Table, outcome: str | EventOutcome | None) -> Column:

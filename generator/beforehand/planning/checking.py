@@ -139,7 +139,7 @@ def _one(
     if known and known.sizes:
         smallest = test.smallest_p(
             known.sizes,
-            known.pooled,
+            None,  # values of the outcomes stay unread
             alternative=hypothesis.side,
             null_value=null.values[0] if len(null.values) == 1 else None,
             **hypothesis.options,
@@ -147,6 +147,8 @@ def _one(
         )
         one_sided = hypothesis.side != "two_sided" or written.form == "outside"
         smallest = min(1.0, smallest * _reading(family, one_sided=one_sided))
+    if known and 0 in known.sizes:
+        smallest = 1.0  # a group without a unit gives no result, which counts as p = 1
     return PlannedHypothesis(
         id=hypothesis.id,
         family=family.id,

@@ -32,10 +32,10 @@ class Written:
 
 def open_folder(folder: Path) -> dict[str, bytes]:
     """Read every file of a run folder as it is; FolderFault when it isn't one. Finishes an interrupted move first."""
-    folder = folder.absolute()
-    if _staged(folder).exists():
-        with _alone(folder.parent):
-            _finish_interrupted(folder)
+    whole = folder.absolute()
+    if _staged(whole).exists():
+        with _alone(whole.parent):
+            _finish_interrupted(whole)
     if not folder.is_dir():
         raise FolderFault(str(folder), "there is no such folder; give the folder that `beforehand report` wrote")
     if not _is_ours(folder):

@@ -40,7 +40,9 @@ NO_EVENT_SECOND = "The second group has no event: estimate and upper end of the 
         "ends of the interval by false position; shares no beta function, no inverse function and no sum with the first"
     ),
     bound=1e-9,
-    reference="Przyborowski and Wilenski (1940), Biometrika 31:313-323; Gu and others (2008), Biometrical Journal 50:283",
+    reference=(
+        "Przyborowski and Wilenski (1940), Biometrika 31:313-323; Gu and others (2008), Biometrical Journal 50:283"
+    ),
 )
 def rate_ratio(
     first: Values,

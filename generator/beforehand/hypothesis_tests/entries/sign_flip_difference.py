@@ -83,7 +83,8 @@ def sign_flip_difference(
 
     Each set of pairs has one critical null value, the mean difference within them, and p at any null value counts
     critical values. The interval runs from one of them to another, and holds exactly the null values that the same
-    test, with the same draws, does not reject. Without symmetry and without allocation at random p tests symmetry about the null value, not the mean.
+    test, with the same draws, does not reject. Without symmetry and without allocation at random p tests symmetry about
+    the null value, not the mean.
 
     References
     ----------

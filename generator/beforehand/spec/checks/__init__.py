@@ -4,6 +4,7 @@ from collections.abc import Iterator
 
 from beforehand.spec.checks.beside import check_beside
 from beforehand.spec.checks.blocks import blocks_of
+from beforehand.spec.checks.compared import check_compared
 from beforehand.spec.checks.data_sets import check_data_sets
 from beforehand.spec.checks.descriptions import check_descriptions
 from beforehand.spec.checks.designs import check_data, check_design
@@ -59,4 +60,5 @@ def _under_promise(document: Document, number: int) -> Iterator[Finding]:
     for block in blocks_of(document, number):
         yield from check_direction(block, document)
     yield from check_procedure(document, number)
+    yield from check_compared(document, number)
     yield from check_success(document, number)

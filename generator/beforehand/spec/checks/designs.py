@@ -97,7 +97,7 @@ def _shape(block: Block) -> Iterator[Finding]:
             (*block.path, "groups"),
             f"{block.name} has 'groups', and {takes} is about one sample. Choose its rows with 'where'.",
         )
-    if test.design == "two_groups" and written.groups is None:
+    if test.design in ("two_groups", "contrast") and written.groups is None:
         yield Finding(
             block.path, f"{block.name} needs the key 'groups': {takes} compares two. Write {{column, first, second}}."
         )

@@ -3,6 +3,7 @@
 import re
 from collections.abc import Iterator
 
+from beforehand.hypothesis_tests.contract import StatisticalTest
 from beforehand.spec.checks.blocks import Block, promise_of
 from beforehand.spec.model import Comparisons, Document, HypothesesFrom
 from beforehand.spec.options import faults_of
@@ -28,6 +29,8 @@ def check_null(block: Block, document: Document) -> Iterator[Finding]:
             (*block.path, "null_hypothesis"),
             f"the margins of {block.name} must be above 0: the test '{block.test.name}' is about a ratio",
         )
+    elif block.test and (text := _null_out_of_range(block.null.margins, block.test)):
+        yield Finding((*block.path, "null_hypothesis"), f"{block.name}: {text}")
     if form != "at" and written.margin_basis is None and document.study.intent == "confirmatory":
         yield Finding(
             block.path,
@@ -35,6 +38,16 @@ def check_null(block: Block, document: Document) -> Iterator[Finding]:
         )
     if form == "at" and written.margin_basis is not None:
         yield Finding((*block.path, "margin_basis"), f"{block.name} has 'margin_basis' and no margin")
+
+
+def _null_out_of_range(margins: tuple[float, ...], test: StatisticalTest[...]) -> str | None:
+    """Say which null values a test takes, where one is none of them."""
+    if test.only_default_null and margins != (test.null_default,):
+        return f"the test '{test.name}' takes no other null value than {test.null_default:g}"
+    if test.null_between and not all(test.null_between[0] < margin < test.null_between[1] for margin in margins):
+        low, high = test.null_between
+        return f"the null values of the test '{test.name}' lie between {low:g} and {high:g}"
+    return None
 
 
 def check_direction(block: Block, document: Document) -> Iterator[Finding]:
