@@ -10,13 +10,12 @@ from beforehand.report.view.firm import firmness
 from beforehand.report.view.front import front
 from beforehand.report.view.headings import HEADINGS
 from beforehand.report.view.inputs import inputs
-from beforehand.report.view.lines import lines_of
+from beforehand.report.view.lines import lines_of, supporting_lines
 from beforehand.report.view.methods import methods
 from beforehand.report.view.model import View
 from beforehand.report.view.promised import promised
 from beforehand.report.view.results import results
 from beforehand.report.view.second import second
-from beforehand.report.view.supportive import supporting_lines
 from beforehand.report.view.warned import departures, warning_section
 
 __all__ = ["View", "view"]

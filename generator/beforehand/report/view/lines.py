@@ -70,6 +70,15 @@ class Line:
 
 def lines_of(record: Record) -> tuple[Line, ...]:
     """Give every hypothesis with its family and numbers, in the order of the spec."""
+    return _lines(record, record.hypotheses)
+
+
+def supporting_lines(record: Record) -> tuple[Line, ...]:
+    """Give every supportive analysis with the family of its hypothesis and its own numbers, in the same order."""
+    return _lines(record, (one.hypothesis for one in record.supportive))
+
+
+def _lines(record: Record, words: Iterable[HypothesisRecord]) -> tuple[Line, ...]:
     families = {family.id: family for family in record.families}
     places = {name: at for at, name in enumerate(record.results.id)}
     return tuple(
@@ -80,7 +89,7 @@ def lines_of(record: Record) -> tuple[Line, ...]:
             record.results.row(places[one.id]),
             record.scheme if families[one.family].under_study_promise else "separate",
         )
-        for one in record.hypotheses
+        for one in words
     )
 
 

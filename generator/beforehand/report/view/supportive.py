@@ -6,7 +6,7 @@ from dataclasses import dataclass
 
 from beforehand.record.model import Record, SupportiveRecord
 from beforehand.report.view import criteria, tables
-from beforehand.report.view.lines import Line
+from beforehand.report.view.lines import Line, supporting_lines
 from beforehand.report.view.model import Cell, Head, Row, Table
 from beforehand.report.view.sentences import capital
 from beforehand.report.view.written import size, written
@@ -28,16 +28,6 @@ class Support:
     def agrees(self) -> bool:
         """Whether it agrees with its hypothesis in direction and in the side of the threshold."""
         return self.record.same_direction is True and self.record.same_side is True
-
-
-def supporting_lines(record: Record) -> tuple[Line, ...]:
-    """Give every supportive analysis with its numbers, in the order of the spec."""
-    families = {family.id: family for family in record.families}
-    places = {name: at for at, name in enumerate(record.results.id)}
-    words = (one.hypothesis for one in record.supportive)
-    return tuple(
-        Line(one, families[one.family], record.study.intent, record.results.row(places[one.id])) for one in words
-    )
 
 
 def supports_of(record: Record) -> dict[str, tuple[Support, ...]]:
