@@ -1,10 +1,13 @@
 """``beforehand methods``: the catalogue, or one entry of it."""
 
+import re
+import textwrap
 from typing import TYPE_CHECKING, Any
 
 import click
 
 from beforehand.cli.options import json_option
+from beforehand.terms import CRITERION_WORDS
 
 if TYPE_CHECKING:
     from beforehand.catalogue import Catalogue
@@ -65,7 +68,13 @@ def _entry(name: str, catalogues: "dict[str, Catalogue[Any]]") -> dict[str, Any]
             declared = {key: value for key, value in vars(entry).items() if not callable(value) and value != ""}
             options = {key: _default(option) for key, option in getattr(entry, "options", {}).items()}
             text = _documentation(catalogue, name)
-            return {"name": name, "kind": heading, **declared, "options": options, "documentation": text}
+            return {
+                "name": name,
+                "kind": heading.removesuffix("s"),
+                **declared,
+                "options": options,
+                "documentation": text,
+            }
     near = next((found for catalogue in catalogues.values() if (found := catalogue.nearest(name))), None)
     hint = f"The nearest name is '{near}'." if near else "`beforehand methods` lists all names."
     raise CallFault("beforehand methods", f"no test, procedure or warning is called '{name}'. {hint}")
@@ -83,13 +92,53 @@ def _documentation(catalogue: "Catalogue[Any]", name: str) -> str:
     return inspect.getdoc(function) or inspect.getdoc(module) or ""
 
 
+WIDTH = 110
+"""Longer lines are broken."""
+
+LABELS = {
+    "kind": "what it is",
+    "estimates": "estimates",
+    "parameter": "in symbols",
+    "statistic": "statistic",
+    "p_is": "p is",
+    "null": "null hypothesis",
+    "null_default": "its usual value",
+    "takes": "also takes",
+    "assumptions": "assumes",
+    "second_route": "computed again by",
+    "controls": "controls",
+    "strong": "whichever hypotheses are true",
+    "valid_under": "valid under",
+    "no_intervals_because": "intervals",
+    "severity": "severity, at most",
+    "scope": "about",
+    "evidence": "read from",
+    "why": "why it matters",
+    "basis": "basis",
+    "false_alarm_rate": "speaks in honest studies",
+    "measured_on": "measured on",
+    "reference": "reference",
+    "options": "options",
+}
+"""What is shown of an entry, in this order, and how it is called."""
+
+
 def _print_entry(entry: dict[str, Any]) -> None:
     click.secho(f"{entry['name']}: {entry['title']}", bold=True)
-    shown = {key: value for key, value in entry.items() if key not in ("name", "title", "documentation")}
-    width = max(len(key) for key in shown)
-    for key, value in shown.items():
-        click.echo(f"  {key.replace('_', ' ').ljust(width)}  {_written(value)}")
-    click.echo(f"\n{entry['documentation']}")
+    shown = {label: entry[key] for key, label in LABELS.items() if entry.get(key) not in (None, "", (), {})}
+    width = max(len(label) for label in shown)
+    for label, value in shown.items():
+        start = f"  {label.ljust(width)}  "
+        click.echo(textwrap.fill(_written(value), WIDTH, initial_indent=start, subsequent_indent=" " * len(start)))
+    for paragraph in _for_readers(entry["documentation"]):
+        click.echo(f"\n{paragraph}")
+
+
+def _for_readers(documentation: str) -> list[str]:
+    """Give what a docstring says of the science: its opening, and its notes and references."""
+    parts = re.split(r"\n\n([A-Z][a-z]+)\n-+\n", documentation)
+    sections = dict(zip(parts[1::2], parts[2::2], strict=True))
+    return [parts[0], *(sections[name] for name in ("Notes", "References") if name in sections)]
 
 
 def _written(value: Any) -> str:
@@ -99,4 +148,6 @@ def _written(value: Any) -> str:
         return ", ".join(f"{key}: {item}" for key, item in value.items()) or "none"
     if isinstance(value, bool):
         return "yes" if value else "no"
-    return "none" if value is None else str(value)
+    if isinstance(value, float):
+        return f"{value:g}"
+    return str(value).replace("_", " ") if value in CRITERION_WORDS else str(value)
