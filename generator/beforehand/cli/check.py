@@ -67,6 +67,8 @@ def _print(checked: "Checked") -> None:
         click.echo("No data yet: none of the files is there, so the spec was checked alone.")
     else:
         _print_rows(checked.dataset)
+    for verdict in checked.verdicts:
+        click.echo(verdict)
     for hypothesis in checked.out_of_reach:
         click.echo(
             f"{hypothesis.id} cannot be rejected: the smallest p that {hypothesis.test} can reach here is "

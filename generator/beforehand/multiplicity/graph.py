@@ -12,7 +12,7 @@ from typing import Any
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from beforehand.multiplicity.contract import Vector
+from beforehand.multiplicity.contract import Vector, largest_so_far
 from beforehand.multiplicity.decision import is_rejected
 
 Truths = NDArray[np.bool_]
@@ -114,7 +114,10 @@ class Graph:
         left = [unpassed(share for (i, _), share in shares.items() if i == place) for place in range(len(nodes))]
         if any(rest < NONE for rest in left) or any(i == j for i, j in shares):
             raise ValueError("a node passes at most all that it holds, and nothing to itself")
-        weights = [float(Fraction(start.get(node, 0))) for node in nodes]
+        exact = [Fraction(str(start.get(node, 0))) for node in nodes]
+        if sum(exact) > 1 or min(exact, default=0) < 0:
+            raise ValueError("the shares with which nodes start are at least 0, and together at most 1")
+        weights = [float(share) for share in exact]
         if not any(share[1] for share in shares.values()):
             plain = np.zeros((len(nodes), len(nodes)))
             for place, share in shares.items():
@@ -299,8 +302,7 @@ def _account(falls: list[_Fall], held: Vector) -> Walk:
     step, taken_from = np.zeros(n, dtype=np.int64), np.zeros(n, dtype=np.int64)
     weight, product, adjusted = np.full(n, np.nan), np.full(n, np.nan), np.ones(n)
     step[order] = np.arange(1, len(order) + 1)
-    is_largest = products >= np.maximum.accumulate(products)
-    taken_from[order] = np.maximum.accumulate(np.where(is_largest, step[order], 1))
+    taken_from[order] = largest_so_far(products) + 1
     weight[order] = [fall.weight for fall in falls]
     product[order] = products
     adjusted[order] = np.minimum(np.maximum.accumulate(products), 1.0)

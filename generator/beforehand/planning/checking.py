@@ -11,6 +11,7 @@ from beforehand.hypothesis_tests.contract import STATISTICAL_TESTS
 from beforehand.hypothesis_tests.nulls import Null, alternative_in_symbols, null_in_symbols
 from beforehand.multiplicity.decision import is_rejected
 from beforehand.planning.reaching import first_thresholds
+from beforehand.planning.verdicts import verdicts
 from beforehand.spec.model import Description, Hypothesis
 from beforehand.spec.planned import PlannedFamily, Spec
 
@@ -63,6 +64,11 @@ class Checked:
         """The hypotheses that no data of these sizes could reject."""
         return tuple(hypothesis for hypothesis in self.hypotheses if not hypothesis.can_be_rejected)
 
+    @property
+    def verdicts(self) -> tuple[str, ...]:
+        """Where success of a family, and what it takes to let others have their turn, are different things."""
+        return verdicts(self.spec)
+
     def summary(self) -> dict[str, Any]:
         """Give it as plain values."""
         return {
@@ -73,6 +79,7 @@ class Checked:
             ],
             "hypotheses": [vars(hypothesis) for hypothesis in self.hypotheses],
             "beside": [vars(one) for one in self.beside],
+            "verdicts": list(self.verdicts),
             "rows": {name: rows_of(self.dataset, name) for name in self.dataset.tables} if self.dataset else None,
         }
 
