@@ -56,7 +56,9 @@ class Agreement:
     def numbers(
         self, about: str, quantity: str, first: float, second: float, *, bound: float, floor: float = P_FLOOR
     ) -> None:
-        """Compare two numbers."""
+        """Compare two numbers; where neither computation has one there is nothing to compare."""
+        if math.isnan(first) and math.isnan(second):
+            return
         difference = relative_difference(first, second, floor=floor)
         self.compared.append(Comparison(about, quantity, first, second, bound, difference))
 

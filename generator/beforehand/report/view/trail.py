@@ -18,6 +18,7 @@ SMALLER = (
     "An adjusted p is never larger than that of a hypothesis with a larger p: where a later rank gave a smaller "
     "result, that one counts (running minimum)."
 )
+ELSEWHERE = "Where the result of another rank counts, in the order of weights or of the plan, that rank is named."
 CAPPED = "A result above 1 counts as 1."
 
 
@@ -100,9 +101,13 @@ def _notes(lines: list[Line]) -> Iterable[str]:
     walked = any(schemes.is_walked(line) for line in lines)
     if walked:
         yield schemes.WALKED
-    if not walked and any(line.count("from_rank") < line.count("rank") for line in lines):
+    own_order = bool(lines) and {"weights", "positions"} & lines[0].family.given.keys()
+    moved = [line.count("from_rank") - line.count("rank") for line in lines]
+    if own_order and any(moved):
+        yield ELSEWHERE
+    elif not walked and min(moved, default=0) < 0:
         yield LARGER
-    if any(line.count("from_rank") > line.count("rank") for line in lines):
+    if not own_order and max(moved, default=0) > 0:
         yield SMALLER
     if any(line.number("product") > 1 for line in lines):
         yield CAPPED
