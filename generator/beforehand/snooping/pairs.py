@@ -113,8 +113,8 @@ def _grouped(members: list[Hypothesis], by: Callable[[Hypothesis], Hashable]) ->
 
 
 def _compares_two(member: Hypothesis) -> bool:
-    two_groups = member.groups is not None and STATISTICAL_TESTS[member.test].design == "two_groups"
-    return two_groups and member.null_hypothesis.form != "outside"
+    compares = member.groups is not None and STATISTICAL_TESTS[member.test].design in ("two_groups", "contrast")
+    return compares and member.null_hypothesis.form != "outside"
 
 
 def _groups_of(member: Hypothesis) -> Groups:
