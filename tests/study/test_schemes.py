@@ -3,6 +3,7 @@
 import csv
 import io
 import json
+import math
 import re
 import subprocess
 import sys
@@ -240,6 +241,18 @@ def test_the_figure_is_drawn_from_what_the_record_holds(finished: tuple[str, Any
         register_in_matplotlib()
         (figure,) = graph.draw(run.record.drawn["graph"])
         assert len(figure.table) == 1 + (4 if name == "graph of hypotheses" else 2)
+
+
+def test_intervals_match_a_level_that_is_known_beforehand(finished: tuple[str, Any]) -> None:
+    name, run = finished
+    second = run.record.families[1]
+    matching = run.tests.set_index("id")["matching_level"]["shrinkage_fibre"]
+    if name == "shares":  # Bonferroni of two on 0.2 x .002, both sides of each: 1 - .0004 / 2
+        assert matching == pytest.approx(0.9998)
+        assert second.no_intervals_because == ""
+    else:
+        assert math.isnan(matching)
+        assert second.no_intervals_because
 
 
 def test_stairs_stand_at_the_level_of_the_family(finished: tuple[str, Any]) -> None:

@@ -16,7 +16,9 @@ def with_simultaneous(judged: Iterable[JudgedFamily], computed: Mapping[str, Com
     """Give every hypothesis the interval that leaves out its null value if and only if it is rejected."""
     found = dict(computed)
     for family in judged:
-        if family.entered.procedure.intervals == "critical_value":
+        # a level that depends on what others found gives no confidence that is known beforehand
+        known = family.entered.family.sure_share is not None
+        if known and family.entered.procedure.intervals == "critical_value":
             found |= {one.hypothesis.id: one for one in _of_family(family, computed)}
     return found
 
