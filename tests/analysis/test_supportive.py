@@ -13,10 +13,15 @@ from small_study import SPEC, rows
 from supportive_study import values, write
 
 import beforehand
+from beforehand.analysis.computed import compute
+from beforehand.analysis.supportive import _signs
 from beforehand.cli import exit_code
 from beforehand.data import samples
+from beforehand.data.dataset import read_data
 from beforehand.errors import TwoComputationsDisagree
+from beforehand.hypothesis_tests.contract import Outcome
 from beforehand.record.model import Record, SupportiveRecord
+from beforehand.spec.load import load_spec
 
 
 def exact_rank_p(first: list[float], second: list[float]) -> float:
@@ -227,3 +232,14 @@ def test_check_finds_the_rows_and_computes_no_test(
         ("uncracked/fibre-plain", [15, 7]), ("uncracked/foam-plain", [12, 7]), ("by_ranks", [15, 15]),
         ("shrinks_less", [16, 15]), ("slabs_made", [47]),
     ]  # fmt: skip
+
+
+@pytest.mark.parametrize(("away", "sign"), [(2.0, 1.0), (-2.0, -1.0), (1e-9, 0.0), (-1e-9, 0.0), (1e-7, 1.0)])
+def test_rounding_errors_are_no_direction(tmp_path: Path, away: float, sign: float) -> None:
+    """In standard errors: two computations agree to 1e-8 of one, and nearer to its null value no estimate has a side."""
+    spec = load_spec(write(tmp_path))
+    one = compute(spec.families[0], spec.hypotheses[0], read_data(spec))
+    assert isinstance(one.result, Outcome)
+    moved = replace(one, result=replace(one.result, estimate=away * one.result.standard_error))
+    assert _signs(moved) == (sign,)
+    assert _signs(moved, turned=True) == (-sign,)

@@ -52,6 +52,9 @@ def altered(folder: Path, name: str, column: str, cell: str) -> None:
 def test_the_checker_finds_nothing(finished: Path) -> None:
     done = recheck(finished)
     assert done.returncode == 0, done.stdout + done.stderr
+    lines = done.stdout.splitlines()
+    assert lines[0] == "Read: 4 hypotheses in 2 families; beside them, described and not decided: 4."
+    assert lines[-1] == "Rechecked 4 hypotheses: everything agrees."
 
 
 @pytest.mark.parametrize(

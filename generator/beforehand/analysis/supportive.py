@@ -5,7 +5,7 @@ import numpy as np
 from beforehand.analysis.changes import changes_in_words
 from beforehand.analysis.computed import Computed
 from beforehand.analysis.records import hypothesis_record
-from beforehand.analysis.twice import TwoComputations
+from beforehand.analysis.twice import STANDARD_ERRORS, TwoComputations
 from beforehand.hypothesis_tests.contract import Outcome
 from beforehand.multiplicity.decision import is_rejected
 from beforehand.record.model import SupportiveRecord
@@ -47,11 +47,12 @@ def _record(spec: Spec, planned: PlannedSupportive, base: Computed, one: Compute
 def _signs(one: Computed, *, turned: bool = False) -> tuple[float, ...]:
     """Say on which side of each value of its null hypothesis an estimate lies; ``turned`` where first and second are.
 
-    -1 stands for below, 1 for above, 0 for an estimate at the value itself.
+    -1 stands for below, 1 for above, 0 for an estimate that is nearer to the value than two computations agree.
     """
     assert isinstance(one.result, Outcome)
-    signs = tuple(float(np.sign(one.result.estimate - value)) for value in one.null.values)
-    return tuple(-sign for sign in reversed(signs)) if turned else signs
+    away = np.array([one.result.estimate - value for value in one.null.values])
+    signs = np.where(np.abs(away) <= STANDARD_ERRORS * one.result.standard_error, 0.0, np.sign(away))
+    return tuple((-signs[::-1] if turned else signs).tolist())
 
 
 def _swapped(base: Computed, one: Computed) -> bool:

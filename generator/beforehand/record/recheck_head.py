@@ -50,19 +50,22 @@ def main(arguments: list[str]) -> int:
     except (OSError, TypeError, ValueError, LookupError, ArithmeticError, Unreadable) as why:
         print(f"This folder can't be rechecked: {why}", file=sys.stderr)
         return 2
-    say_what_is_done(len(rows), families, record["scheme"])
+    members = {member for family in families for member in family["members"]}
+    beside = sum(row["id"] not in members for row in rows)
+    say_what_is_done(len(members), beside, families, record["scheme"])
     for difference in differences:
         print(difference)
     found = f"differences: {len(differences)}" if differences else "everything agrees"
-    print(f"Rechecked {len(rows)} hypotheses: {found}.")
+    print(f"Rechecked {len(members)} hypotheses: {found}.")
     return 1 if differences else 0
 
 
-def say_what_is_done(hypotheses: int, families: list[dict[str, Any]], scheme: str) -> None:
+def say_what_is_done(hypotheses: int, beside: int, families: list[dict[str, Any]], scheme: str) -> None:
     """Print what is recomputed and what is taken as recorded."""
     used = [*sorted({family["procedure"] for family in families} - {scheme}), scheme]
     whole = [name for name in used if name in {**PROCEDURES, **SCHEMES} and name not in {**TAKEN, **FROM}]
-    print(f"Read: {hypotheses} hypotheses in {len(families)} families.")
+    described = f"; beside them, described and not decided: {beside}" if beside else ""
+    print(f"Read: {hypotheses} hypotheses in {len(families)} families{described}.")
     print(f"Recomputed: the columns {', '.join(RECOMPUTED)} and product, and each family's gate and counts;")
     print(f"  from column p_entered alone: {', '.join(whole) or 'nothing'}.")
     for name in used:

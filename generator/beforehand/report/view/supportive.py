@@ -39,7 +39,7 @@ def supports_of(record: Record) -> dict[str, tuple[Support, ...]]:
 
 
 def agreement(supports: tuple[Support, ...]) -> str:
-    """Count those that agree: "1 of 2 supportive analyses agrees in direction and in the side of the threshold"."""
+    """Count those that agree: "1 of 2 supportive analyses agrees with it in direction and in the side of …"."""
     agreeing = sum(support.agrees for support in supports)
     noun = "supportive analysis" if len(supports) == 1 else "supportive analyses"
     verb = "agrees" if agreeing == 1 else "agree"
