@@ -82,6 +82,46 @@ def test_one_rate_has_a_unit(tmp_path: Path) -> None:
     )
 
 
+RELATED = """
+- {id: linear, test: pearson_correlation, outcome: {first: before, second: flow}, alternative: above}
+- id: ranked
+  test: spearman_correlation
+  outcome: {first: before, second: flow}
+  null_hypothesis: {at_most: 0.3}
+  margin_basis: {text: what is worth knowing, source: plan}
+- id: hours
+  test: kendall_correlation
+  outcome: {first: hours, second: flow}
+  alternative: two_sided
+"""
+
+
+def test_associations_from_spec_to_report(tmp_path: Path) -> None:
+    lines = with_missing((0, "before"), (1, "flow"), (2, "flow"), (2, "before"))
+    record = reported(tmp_path, RELATED, lines=lines)
+    pairs = [
+        (float(b), float(f))
+        for b, f in ((cells[6], cells[7]) for cells in (line.split(",") for line in lines[1:]))
+        if b and f
+    ]
+    x, y = zip(*pairs, strict=True)
+    again = stats.pearsonr(x, y, alternative="greater")
+    found = row(tmp_path, "linear")
+    assert (found["estimate"], found["p"]) == pytest.approx((again.statistic, again.pvalue), rel=1e-9)
+    assert found["n"] == 57
+    assert row(tmp_path, "ranked")["estimate"] == pytest.approx(stats.spearmanr(x, y).statistic, rel=1e-12)
+    linear, ranked, hours = record["hypotheses"]
+    assert [one["label"] for one in (linear, hours)] == ["linear", "hours and flow"]  # two are about the same columns
+    assert linear["alternative_in_words"] == "the correlation of before and flow is above 0"
+    assert ranked["null_in_words"] == "the rank correlation (Spearman) of before and flow is at most 0.3"
+    assert ranked["null"] == "ρ ≤ 0.3"
+    assert [(one["group"], one["n"], one["missing"]) for one in linear["summaries"]] == [
+        ("before", 57, 3),
+        ("flow", 57, 3),
+    ]
+    assert hours["beside"] == []
+
+
 def fault(tmp_path: Path, hypotheses: str, lines: list[str]) -> str:
     with pytest.raises(DataFault) as refused:
         beforehand.run(write_filters(tmp_path, hypotheses, lines=lines))

@@ -57,6 +57,31 @@ def message(hypothesis: str) -> str:
             "hypothesis 'leaks' needs counts, and column 'flow' is not declared as {kind: count}: whole numbers from 0 "
             "on, of a column of the file.",
         ),
+        (
+            "- {id: flow, test: pearson_correlation, outcome: flow, alternative: above}",
+            "hypothesis 'flow' does not say which two columns it relates. Write outcome: {first, second} in "
+            "'hypotheses'.",
+        ),
+        (
+            f"- {{id: flow, test: kendall_correlation, outcome: {{first: flow, second: flow}}, {GROUPS}, "
+            "alternative: above}",
+            "hypothesis 'flow' relates column 'flow' to itself.\n"
+            "hypothesis 'flow' has 'groups', and the test 'kendall_correlation' relates two columns of one row.",
+        ),
+        (
+            "- {id: flow, test: spearman_correlation, outcome: {first: flow, second: water}, alternative: above}",
+            "hypothesis 'flow' needs a number or a count where column 'water' stands, which is a text.",
+        ),
+        (
+            "- {id: a, test: pearson_correlation, outcome: {first: flow, second: before}, alternative: above}\n"
+            "      - {id: b, test: pearson_correlation, outcome: {first: before, second: flow}, alternative: above}",
+            "hypothesis 'b' asks what 'a' asks, and would count twice. Take one of them out.",
+        ),
+        (
+            "- {id: a, test: pearson_correlation, outcome: {first: flow, second: before}, alternative: above,"
+            " null_hypothesis: {at: 1.5}}",
+            "hypothesis 'a': the null values of the test 'pearson_correlation' lie between -1 and 1.",
+        ),
     ],
 )
 def test_message(hypothesis: str, said: str) -> None:

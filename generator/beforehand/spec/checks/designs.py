@@ -192,7 +192,8 @@ def _outcomes(block: Block) -> Iterator[Finding]:
         for key in ("first", "second"):
             yield from _outcome(block, getattr(written.outcome, key), None, (*path, key), "outcome")
         if written.outcome.first == written.outcome.second:
-            yield Finding(path, f"{block.name} compares column '{written.outcome.first}' with itself")
+            does, what = ("relates", "to") if block.test.design == "association" else ("compares", "with")
+            yield Finding(path, f"{block.name} {does} column '{written.outcome.first}' {what} itself")
     elif written.outcome is not None:
         yield from _outcome(block, written.outcome, None, path, "outcome")
 

@@ -7,7 +7,7 @@ import rfc8785
 
 from beforehand.hypothesis_tests.contract import STATISTICAL_TESTS
 from beforehand.spec.canonical import plain
-from beforehand.spec.model import Document, WrittenHypothesis
+from beforehand.spec.model import Document, PairOutcome, WrittenHypothesis
 from beforehand.spec.places import Finding
 
 # What words and judges a hypothesis, and does not change what is computed.
@@ -36,8 +36,8 @@ def meaning(hypothesis: WrittenHypothesis) -> bytes:
     An association is the same whichever column is named first.
     """
     written = {key: value for key, value in plain(hypothesis).items() if key not in _WORDS}
-    if hypothesis.test in STATISTICAL_TESTS and STATISTICAL_TESTS[hypothesis.test].design == "association":
-        written["outcome"] = sorted(dict(written.get("outcome") or {}).values())
+    if isinstance(hypothesis.outcome, PairOutcome) and _is_association(hypothesis.test):
+        written["outcome"] = sorted((hypothesis.outcome.first, hypothesis.outcome.second))
         return rfc8785.dumps(written)
     for key in ("groups", "outcome"):
         pair: Any = written.get(key)
@@ -47,3 +47,7 @@ def meaning(hypothesis: WrittenHypothesis) -> bytes:
             side = str(written.get("alternative"))
             written["alternative"] = _MIRRORED.get(side, side)
     return rfc8785.dumps(written)
+
+
+def _is_association(test: str) -> bool:
+    return test in STATISTICAL_TESTS and STATISTICAL_TESTS[test].design == "association"
