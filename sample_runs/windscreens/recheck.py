@@ -13,6 +13,7 @@ import csv
 import hashlib
 import io
 import json
+import math  # noqa: F401 -- for the replays
 import sys
 from pathlib import Path
 from typing import Any, Callable, Iterator  # noqa: UP035 -- read by Python 3.8 too
@@ -26,6 +27,8 @@ READ = ("id", "family", "p", "p_entered", "entered_as", "side_agrees", "rank", "
 PROCEDURES: dict[str, Callable[..., Any]] = {}
 SCHEMES: dict[str, Callable[..., Any]] = {}
 TAKEN: dict[str, str] = {}  # what a procedure or scheme takes as recorded, beside the p-values
+FROM: dict[str, str] = {}  # what a procedure is recomputed from, where that is more than p_entered
+CHECKS: list[Callable[..., Iterator[str]]] = []  # what is checked of such a family beside its decisions
 
 
 class Unreadable(Exception):
@@ -44,27 +47,33 @@ def main(arguments: list[str]) -> int:
         rows = read_rows(content["tests.csv"].decode("utf-8"))
         families = read_families(record)
         differences = [*checksums(content, record), *arithmetic(record, families, rows)]
-    except (OSError, TypeError, ValueError, Unreadable) as why:
+    except (OSError, TypeError, ValueError, LookupError, ArithmeticError, Unreadable) as why:
         print(f"This folder can't be rechecked: {why}", file=sys.stderr)
         return 2
-    say_what_is_done(len(rows), families, record["scheme"])
+    members = {member for family in families for member in family["members"]}
+    beside = sum(row["id"] not in members for row in rows)
+    say_what_is_done(len(members), beside, families, record["scheme"])
     for difference in differences:
         print(difference)
     found = f"differences: {len(differences)}" if differences else "everything agrees"
-    print(f"Rechecked {len(rows)} hypotheses: {found}.")
+    print(f"Rechecked {len(members)} hypotheses: {found}.")
     return 1 if differences else 0
 
 
-def say_what_is_done(hypotheses: int, families: list[dict[str, Any]], scheme: str) -> None:
+def say_what_is_done(hypotheses: int, beside: int, families: list[dict[str, Any]], scheme: str) -> None:
     """Print what is recomputed and what is taken as recorded."""
-    used = [*sorted({family["procedure"] for family in families}), scheme]
-    whole = [name for name in used if name in {**PROCEDURES, **SCHEMES} and name not in TAKEN]
-    print(f"Read: {hypotheses} hypotheses in {len(families)} families.")
+    used = [*sorted({family["procedure"] for family in families} - {scheme}), scheme]
+    whole = [name for name in used if name in {**PROCEDURES, **SCHEMES} and name not in {**TAKEN, **FROM}]
+    described = f"; beside them, described and not decided: {beside}" if beside else ""
+    print(f"Read: {hypotheses} hypotheses in {len(families)} families{described}.")
     print(f"Recomputed: the columns {', '.join(RECOMPUTED)} and product, and each family's gate and counts;")
     print(f"  from column p_entered alone: {', '.join(whole) or 'nothing'}.")
+    for name in used:
+        if name in FROM:
+            print(f"  from {FROM[name]}: {name}.")
     print("Taken as recorded: p, from which p_entered has to follow as the column entered_as says (of a two-sided test")
-    print("  that enters with the side of its claim, that side's p); the families, their members and levels; the sides")
-    print("  of the estimates; every other column.")
+    print("  that enters with the side of its claim, that side's p); the families, their members and levels; what the")
+    print("  plan gives them (weights, shares, a graph); the sides of the estimates; every other column.")
     for name in used:
         if name in TAKEN:
             print(f"  For {name}: {TAKEN[name]}.")
@@ -130,14 +139,14 @@ def arithmetic(record: Any, families: list[dict[str, Any]], rows: list[dict[str,
     members = {member for family in families for member in family["members"]}
     for row in rows:
         yield from entered(row) if row["id"] in members else undecided(row)
-    schemes = {True: record["scheme"], False: "separate"}
-    for covered, scheme in schemes.items():
+    given = record.get("scheme_given") or {}
+    for covered, scheme, beyond in ((True, record["scheme"], given), (False, "separate", {})):
         group = [family for family in families if family["under_study_promise"] == covered]
-        unknown = sorted({family["procedure"] for family in group} - set(PROCEDURES))
+        unknown = sorted({family["procedure"] for family in group} - {scheme} - set(PROCEDURES))
         if group and (unknown or scheme not in SCHEMES):
             yield f"not recomputed: this file does not hold {' or '.join([*unknown, *{scheme} - set(SCHEMES)])}"
         elif group:
-            yield from compare_group(scheme, group, by_id)
+            yield from compare_group(scheme, beyond, group, by_id)
 
 
 def memberships(families: list[dict[str, Any]], rows: list[dict[str, str]], by_id: dict[str, Any]) -> Iterator[str]:
@@ -192,36 +201,45 @@ def undecided(row: dict[str, str]) -> Iterator[str]:
             yield f"{row['id']!r}, column {column}: recorded {row[column]!r}, but it is a member of no family"
 
 
-def compare_group(scheme: str, group: list[dict[str, Any]], by_id: dict[str, Any]) -> Iterator[str]:
+def compare_group(scheme: str, beyond: Any, group: list[dict[str, Any]], by_id: dict[str, Any]) -> Iterator[str]:
     """Recompute the families that one scheme covers, and compare them with what was recorded."""
     members = [[by_id[member] for member in family["members"] if member in by_id] for family in group]
-    again = []
-    for family, rows in zip(group, members):  # noqa: B905 -- read by Python 3.8 too
-        p = [number(row["p_entered"]) for row in rows]
-        p = [value if 0 <= value <= 1 else 1.0 for value in p]
-        again.append(PROCEDURES[family["procedure"]](p, family["level"], **family["given"]))
-    decided = SCHEMES[scheme](
-        [family["id"] for family in group],
-        [result["adjusted"] for result in again],
-        [[row["p"] != "" and row["side_agrees"] != "no" for row in rows] for rows in members],
-        [result["rejected"] for result in again],
-    )
+    again = SCHEMES[scheme]([plain(family, members[k]) for k, family in enumerate(group)], **beyond)
     for k, family in enumerate(group):
-        yield from compare_family(family, members[k], again[k], decided[k])
+        yield from compare_family(family, members[k], again[k])
+        for check in CHECKS:
+            yield from check(family, members[k])
+        if family["procedure"] == scheme:  # it adjusts all of them together, and ranks are steps of one walk
+            yield from trail(members[k], [row for rows in members for row in rows], family["multiples"], "p_study")
+        elif not again[k]["closed_by"]:
+            yield from trail(members[k], members[k], family["multiples"], "p_family")
 
 
-def compare_family(family: dict[str, Any], rows: list[Any], again: Any, decided: Any) -> Iterator[str]:
+def plain(family: dict[str, Any], rows: list[dict[str, str]]) -> dict[str, Any]:
+    """Give what a scheme needs of a family: ids, level, p-values, and its procedure as a function of the level."""
+    p = [number(row["p_entered"]) for row in rows]
+    p = [value if 0 <= value <= 1 else 1.0 for value in p]
+    return {
+        "id": family["id"],
+        "members": [row["id"] for row in rows],
+        "level": family["level"],
+        "p": p,
+        "may_open": [row["p"] != "" and row["side_agrees"] != "no" for row in rows],
+        "judge": lambda level: PROCEDURES[family["procedure"]](p, level, **family["given"]),
+    }
+
+
+def compare_family(family: dict[str, Any], rows: list[Any], again: Any) -> Iterator[str]:
     """Compare one family, member by member and then in its counts."""
-    closed_by = decided["closed_by"]
     column = "p_study" if family["under_study_promise"] else "p_family"
     states: dict[str, int] = {}
     for i, row in enumerate(rows):
-        state = state_again(row, again["rejected"][i], closed_by)
+        state = state_again(row, again["rejected"][i], again["tested"][i])
         compared = state not in ("not_tested", "no_result")
         states[state] = states.get(state, 0) + 1
         expected = {
-            "p_family": None if closed_by else again["adjusted"][i],
-            "p_study": decided["p_study"][i],
+            "p_family": None if again["closed_by"] else again["p_family"][i],
+            "p_study": again["p_study"][i],
             "threshold": family["level"] if compared else None,
             "decides": column if compared else "",
             "state": state,
@@ -229,24 +247,39 @@ def compare_family(family: dict[str, Any], rows: list[Any], again: Any, decided:
         for name, value in expected.items():
             if not same(row[name], value):
                 yield f"{row['id']!r}, column {name}: recorded {row[name]!r}, recomputed {value!r}"
-    if not closed_by:
-        yield from trail(rows, family["multiples"])
+    local, level = again["local_level"], family["level"]
     expected = {
-        "tested": not closed_by,
-        "closed_by": closed_by,
+        "tested": not again["closed_by"],
+        "closed_by": again["closed_by"],
         "states": states,
         "computed": sum(row["p"] != "" for row in rows),
+        "local_level": None if local is None or agree(local, level) else local,
     }
     for name, value in expected.items():
-        if family[name] != value:
-            yield f"record.json, family {family['id']!r}, {name}: recorded {family[name]!r}, recomputed {value!r}"
+        recorded = family.get(name)
+        alike = isinstance(recorded, float) and isinstance(value, float) and agree(recorded, value)
+        if not alike and recorded != value:
+            yield f"record.json, family {family['id']!r}, {name}: recorded {recorded!r}, recomputed {value!r}"
+    if family.get("success"):
+        yield from success(family, rows, 0.0 if again["closed_by"] else again["local_level"])
 
 
-def state_again(row: dict[str, str], rejected: bool, closed_by: str) -> str:
+def success(family: dict[str, Any], rows: list[dict[str, str]], level: float) -> Iterator[str]:
+    """Whether the claim about at least r hypotheses together was judged right: (m - r + 1) x the r-th smallest p."""
+    found, least = family["success"], part(family["success"], "at_least", int)
+    p = sorted(number(row["p_entered"]) if row["p"] and row["side_agrees"] != "no" else 1.0 for row in rows)
+    joint = min((len(p) - least + 1) * p[least - 1], 1.0)
+    if not agree(part(found, "p", float), joint) or not agree(part(found, "level", float), level):
+        yield f"record.json, family {family['id']!r}, success: recorded {found!r}, recomputed p {joint!r} at {level!r}"
+    if found.get("reached") != (level > 0 and joint <= level * (1 + 1e-12)):
+        yield f"record.json, family {family['id']!r}, success: recorded {found!r}, which p {joint!r} is not"
+
+
+def state_again(row: dict[str, str], rejected: bool, tested: bool) -> str:
     """Give the state of one hypothesis from its decision."""
     if row["p"] == "":
         return "no_result"
-    if closed_by:
+    if not tested:
         return "not_tested"
     if not rejected:
         return "not_rejected"
@@ -260,16 +293,17 @@ def same(cell: str, value: Any) -> bool:
     return agree(number(cell), value)
 
 
-def trail(rows: list[dict[str, str]], multiples: bool) -> Iterator[str]:
+def trail(rows: list[dict[str, str]], ranked: list[dict[str, str]], multiples: bool, column: str) -> Iterator[str]:
     """Whether the arithmetic of each decision is right: factor x p_entered, and the rank it was taken from."""
-    at_rank = {row["rank"]: row for row in rows}
+    at_rank = {row["rank"]: row for row in ranked}
     for row in rows:
-        if multiples and not agree(number(row["product"]), number(row["factor"]) * number(row["p_entered"])):
+        product = number(row["factor"]) * number(row["p_entered"])
+        if (multiples or row["factor"]) and not agree(number(row["product"]), product):
             yield f"{row['id']!r}, column product: recorded {row['product']!r}, which is not factor x p_entered"
         source = at_rank.get(row["from_rank"], {"product": ""})
         capped = min(number(source["product"]), 1.0)  # in this order nan stays nan
-        if not agree(number(row["p_family"]), capped):
-            yield f"{row['id']!r}, column from_rank: the product at rank {row['from_rank']!r} is not its p_family"
+        if not agree(number(row[column]), capped):
+            yield f"{row['id']!r}, column from_rank: the product at rank {row['from_rank']!r} is not its {column}"
 
 
 # The procedures and schemes of this run, as the run itself replayed them.
@@ -325,14 +359,20 @@ def replay_holm(p: list[float], level: float) -> dict[str, list[float] | list[bo
 PROCEDURES["holm"] = replay_holm
 
 
-def replay_separate(
-    ids: list[str], p_family: list[list[float]], may_open: list[list[bool]], rejected: list[list[bool]]
-) -> list[dict[str, object]]:
-    """Every family is tested; there is no study level, and so no p_study."""
-    return [{"closed_by": "", "p_study": [None] * len(p_family[k])} for k in range(len(ids))]
+def across_separate(families: list[dict[str, Any]]) -> list[dict[str, Any]]:
+    """Every family is tested at its own level; there is no study level, and so no p_study."""
+    again: list[dict[str, Any]] = []
+    for family in families:
+        judged = family["judge"](family["level"])
+        none = [None] * len(judged["adjusted"])
+        again.append({
+            "closed_by": "", "local_level": family["level"], "p_family": judged["adjusted"], "p_study": none,
+            "tested": [True] * len(none), "rejected": judged["rejected"],
+        })  # fmt: skip
+    return again
 
 
-SCHEMES["separate"] = replay_separate
+SCHEMES["separate"] = across_separate
 
 
 if __name__ == "__main__":

@@ -236,7 +236,7 @@ def test_check_finds_the_rows_and_computes_no_test(
 
 @pytest.mark.parametrize(("away", "sign"), [(2.0, 1.0), (-2.0, -1.0), (1e-9, 0.0), (-1e-9, 0.0), (1e-7, 1.0)])
 def test_rounding_errors_are_no_direction(tmp_path: Path, away: float, sign: float) -> None:
-    """In standard errors: two computations agree to 1e-8 of one, and nearer to its null value no estimate has a side."""
+    """In standard errors: two computations agree to 1e-8 of one; nearer to its null value no estimate has a side."""
     spec = load_spec(write(tmp_path))
     one = compute(spec.families[0], spec.hypotheses[0], read_data(spec))
     assert isinstance(one.result, Outcome)
