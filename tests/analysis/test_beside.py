@@ -122,6 +122,43 @@ def test_associations_from_spec_to_report(tmp_path: Path) -> None:
     assert hours["beside"] == []
 
 
+ADJUSTED = f"""
+- {{id: flow, test: analysis_of_covariance, outcome: flow, covariates: [before, water], {GROUPS}, alternative: above}}
+- id: robust
+  test: analysis_of_covariance
+  outcome: flow
+  covariates: [water, line]
+  {GROUPS}
+  null_hypothesis: {{outside: [-9, 9]}}
+  margin_basis: {{text: what nobody notices, source: plan}}
+  options: {{errors: hc3}}
+"""
+
+
+def test_an_adjusted_difference_from_spec_to_report(tmp_path: Path) -> None:
+    lines = with_missing((0, "before"), (1, "water"), (2, "flow"), (4, "line"))
+    record = reported(tmp_path, ADJUSTED, lines=lines)
+    kept = [cells for cells in (line.split(",") for line in lines[1:]) if cells[6] and cells[3] and cells[7]]
+    y = np.array([float(cells[7]) for cells in kept])
+    x = np.array([[1, cells[1] == "mesh", float(cells[6]), cells[3] == "river"] for cells in kept], dtype=float)
+    coefficients, squares = np.linalg.lstsq(x, y)[:2]
+    error = np.sqrt(squares[0] / (len(kept) - 4) * np.linalg.inv(x.T @ x)[1, 1])
+    found = row(tmp_path, "flow")
+    assert (found["estimate"], found["n"]) == (pytest.approx(coefficients[1], rel=1e-9), 57)
+    assert found["p"] == pytest.approx(stats.t.sf(coefficients[1] / error, len(kept) - 4), rel=1e-9)
+    flow, robust = record["hypotheses"]
+    assert flow["beside"] == ["adjusted for before and water"]
+    assert flow["unit"] == "l/min"
+    assert flow[
+        "alternative_in_words"
+    ] == "the adjusted difference in means of flow (mesh minus felt) is above 0 l/min".replace(
+        " l/min", "\N{NO-BREAK SPACE}l/min"
+    )
+    assert [(one["n"], one["missing"]) for one in flow["summaries"]] == [(29, 1), (28, 2)]
+    assert [(one["n"], one["missing"]) for one in robust["summaries"]] == [(29, 1), (28, 2)]
+    assert "adjusted for before and water" in record["page"]
+
+
 def fault(tmp_path: Path, hypotheses: str, lines: list[str]) -> str:
     with pytest.raises(DataFault) as refused:
         beforehand.run(write_filters(tmp_path, hypotheses, lines=lines))

@@ -78,7 +78,9 @@ def chosen_pairs(spec: Spec, family: PlannedFamily, dataset: Dataset) -> Iterato
     """Give every choice of a pair that a family makes.
 
     Nothing was chosen where there are fewer than four groups, where all pairs of the column are tested or all pairs
-    with one group; and in a test of equivalence, for which the extreme pair is the hardest.
+    with one group; and in a test of equivalence, for which the extreme pair is the hardest. Of a test that takes more
+    of a row than its outcome (an exposure, covariates, strata, a time), outcomes alone don't tell how far apart groups
+    lie: it is left out.
 
     Parameters
     ----------
@@ -113,7 +115,8 @@ def _grouped(members: list[Hypothesis], by: Callable[[Hypothesis], Hashable]) ->
 
 
 def _compares_two(member: Hypothesis) -> bool:
-    compares = member.groups is not None and STATISTICAL_TESTS[member.test].design in ("two_groups", "contrast")
+    test = STATISTICAL_TESTS[member.test]
+    compares = member.groups is not None and test.design in ("two_groups", "contrast") and not test.takes
     return compares and member.null_hypothesis.form != "outside"
 
 
@@ -123,7 +126,7 @@ def _groups_of(member: Hypothesis) -> Groups:
 
 
 def _outcome_of(member: Hypothesis) -> Hashable:
-    return (member.data, _groups_of(member).column, member.outcome, member.time and member.time.column)
+    return (member.data, _groups_of(member).column, member.outcome)
 
 
 def _pair_of(member: Hypothesis) -> frozenset[str]:

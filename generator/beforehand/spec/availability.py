@@ -10,7 +10,7 @@ from beforehand.multiplicity.contract import PROCEDURES
 from beforehand.spec.places import Finding, Path
 
 TESTS = (
-    "analysis_of_covariance", "chi_square", "cluster_t", "crossover_ratio",
+    "chi_square", "cluster_t", "crossover_ratio",
     "crossover_t", "interaction", "left_censored_rank", "log_rank", "mixed_model",
     "proportional_hazards", "trend",
 )  # fmt: skip
