@@ -7,7 +7,9 @@ import subprocess
 import sys
 from pathlib import Path
 
+import page as validator
 import pytest
+from pypdf import PdfReader
 from supportive_study import write
 
 import beforehand
@@ -78,11 +80,16 @@ def test_both_pages_show_them(finished: Path) -> None:
     html = (finished / "report.html").read_text("utf-8")
     for words in ("<h4>Supportive analyses</h4>", "<h4>Descriptions</h4>", "1 of 1 supportive analysis agrees with it"):
         assert words in html
-    from pypdf import PdfReader
-
     text = " ".join("".join(page.extract_text() for page in PdfReader(finished / "report.pdf").pages).split())
     for words in ("Supportive analyses, family strength", "Description slabs_made", "Beside its hypothesis"):
         assert words in text
+
+
+@pytest.mark.parametrize("profile", ["2a", "ua1"])
+def test_the_pdf_conforms_with_their_tables(finished: Path, profile: str) -> None:
+    content = (finished / "report.pdf").read_bytes()
+    found = validator.validate_pdf_bytes(content, profile=profile, limits=validator.SafetyLimits.unlimited())
+    assert [(failure.rule_id, failure.message) for failure in found.failures] == []
 
 
 def test_the_plan_of_the_folder_holds_them(finished: Path) -> None:
