@@ -10,6 +10,7 @@ from numpy.typing import NDArray
 from beforehand.analysis.agreement import Agreement, bound_near
 from beforehand.analysis.succeeding import success_again, success_of
 from beforehand.multiplicity.contract import PROCEDURES, Ordered, Procedure, Steps, Vector
+from beforehand.multiplicity.further_groups import largest_with_further_groups
 from beforehand.multiplicity.scheme import SCHEMES, Falls, FamilyDecision, FamilyResult, Plain
 from beforehand.multiplicity.success import Success
 from beforehand.multiplicity.survival import largest_families
@@ -192,10 +193,16 @@ def _judged(entered: EnteredFamily, decision: FamilyDecision) -> JudgedFamily:
         arithmetic=tuple(ordered.unsorted(np.array(list(steps.arithmetic) or [""] * entered.p.size, dtype=object))),
         survives_up_to=np.where(
             [state in REJECTED for state in decision.states],
-            largest_families(entered.procedure, ordered, level=decision.local_level, **options),
+            _stands_up_to(entered, ordered, level=decision.local_level, **options),
             0,
         ),
     )
+
+
+def _stands_up_to(entered: EnteredFamily, ordered: Ordered, *, level: float, **options: Any) -> NDArray[np.int64]:
+    if entered.procedure.compares == "anything":
+        return largest_families(entered.procedure, ordered, level=level, **options)
+    return largest_with_further_groups(entered.procedure, level=level, **entered.replayed_with)
 
 
 def _fallen(entered: EnteredFamily, decision: FamilyDecision, falls: Falls) -> JudgedFamily:

@@ -1,6 +1,7 @@
 """Dunnett's procedure: each group with one control."""
 
 import math
+from collections.abc import Sequence
 from typing import Any
 
 import numpy as np
@@ -100,6 +101,29 @@ def critical_values(
         tail = level / _times(loadings, doubled)
         values[there] = shared_control_quantile(tail, loadings=loadings[there], df=df, sides=sides)
     return values
+
+
+def tails_with(
+    further: int,
+    members: Sequence[int],
+    *,
+    statistics: Vector,
+    loadings: Vector,
+    df: float,
+    sides: Sides,
+    doubled: bool,
+) -> Vector:
+    """Give the tails of some members, times what they are multiplied by, when further groups without effect join in."""
+    tails = []
+    for i in members:
+        if not loadings[i]:
+            tails.append(1.0)
+            continue
+        every = np.concatenate([loadings, np.full(further, loadings[i])])
+        t = abs(statistics[i]) if sides == 2 else statistics[i]
+        tail = shared_control_tail(t, loadings=every[every != 0], df=df, sides=sides)[0]
+        tails.append(min(1.0, _times(every, doubled) * float(tail)))
+    return np.array(tails, dtype=np.float64)
 
 
 def replay(

@@ -1,6 +1,7 @@
 """Games and Howell's procedure: all pairs of means, whatever the variances of the groups."""
 
 import math
+from collections.abc import Sequence
 from typing import Any
 
 import numpy as np
@@ -66,9 +67,7 @@ def games_howell(p: Ascending, *, statistics: Vector, dfs: Vector, groups: int) 
 
     return by_largest(
         p,
-        tails=np.array(
-            [range_tail(one, groups=groups, df=df)[0] if df else 1.0 for one, df in zip(q, dfs, strict=True)]
-        ),
+        tails=tails_with(0, range(p.size), statistics=statistics, dfs=dfs, groups=groups),
         arithmetic=lambda rank: f"P(Q > {short(q[rank], 6)}), range of {groups} groups with {short(dfs[rank], 6)} df",
         critical=threshold,
     )
@@ -78,6 +77,15 @@ def critical_values(level: float, *, statistics: Vector, dfs: Vector, groups: in
     """Give for each pair the quantile of its range divided by √2: so many standard errors of its difference."""
     values = [range_quantile(level, groups=groups, df=df) / math.sqrt(2) if df else math.nan for df in dfs]
     return np.array(values, dtype=np.float64)
+
+
+def tails_with(further: int, members: Sequence[int], *, statistics: Vector, dfs: Vector, groups: int) -> Vector:
+    """Give the tails of some members when further groups without effect join in."""
+    tails = [
+        float(range_tail(math.sqrt(2) * abs(statistics[i]), groups=groups + further, df=dfs[i])[0]) if dfs[i] else 1.0
+        for i in members
+    ]
+    return np.array(tails, dtype=np.float64)
 
 
 def replay(

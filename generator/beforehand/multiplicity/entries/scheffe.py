@@ -1,6 +1,7 @@
 """Scheffe's procedure: every contrast of the means, also one that the data suggested."""
 
 import math
+from collections.abc import Sequence
 from typing import Any
 
 import numpy as np
@@ -62,7 +63,7 @@ def scheffe(p: Ascending, *, statistics: Vector, df: float, groups: int) -> Step
 
     return by_largest(
         p,
-        tails=special.fdtrc(between, df, f) if df else np.ones_like(f),
+        tails=tails_with(0, range(p.size), statistics=statistics, df=df, groups=groups),
         arithmetic=lambda rank: f"P(F > {short(f[rank], 6)}) with {between} and {short(df, 6)} df",
         critical=threshold,
     )
@@ -73,6 +74,13 @@ def critical_values(level: float, *, statistics: Vector, df: float, groups: int)
     # x = df / (df + t²) has the beta distribution with df/2 and (k - 1)/2, and t is large where x is small
     x = special.betaincinv(df / 2, (groups - 1) / 2, level) if df else math.nan
     return np.full(len(statistics), math.sqrt(df * (1 - x) / x) if df else math.nan)
+
+
+def tails_with(further: int, members: Sequence[int], *, statistics: Vector, df: float, groups: int) -> Vector:
+    """Give the tails of some members when further groups without effect join in."""
+    between = groups + further - 1
+    f = np.asarray(statistics, dtype=np.float64)[members] ** 2 / between
+    return np.asarray(special.fdtrc(between, df, f) if df else np.ones_like(f), dtype=np.float64)
 
 
 def replay(

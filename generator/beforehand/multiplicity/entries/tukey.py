@@ -1,6 +1,7 @@
 """Tukey's studentized range, with Kramer's extension to unequal groups."""
 
 import math
+from collections.abc import Sequence
 from typing import Any
 
 import numpy as np
@@ -68,7 +69,7 @@ def tukey(p: Ascending, *, statistics: Vector, df: float, groups: int) -> Steps:
 
     return by_largest(
         p,
-        tails=range_tail(q, groups=groups, df=df) if df else np.ones_like(q),
+        tails=tails_with(0, range(p.size), statistics=statistics, df=df, groups=groups),
         arithmetic=lambda rank: f"P(Q > {short(q[rank], 6)}), range of {groups} groups with {short(df, 6)} df",
         critical=threshold,
     )
@@ -78,6 +79,12 @@ def critical_values(level: float, *, statistics: Vector, df: float, groups: int)
     """Give the quantile of the range divided by √2: so many standard errors of a difference."""
     value = range_quantile(level, groups=groups, df=df) / math.sqrt(2) if df else math.nan
     return np.full(len(statistics), value)
+
+
+def tails_with(further: int, members: Sequence[int], *, statistics: Vector, df: float, groups: int) -> Vector:
+    """Give the tails of some members when further groups without effect join in."""
+    q = math.sqrt(2) * np.abs(np.asarray(statistics, dtype=np.float64)[members])
+    return range_tail(q, groups=groups + further, df=df) if df else np.ones_like(q)
 
 
 def replay(

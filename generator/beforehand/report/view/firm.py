@@ -11,6 +11,10 @@ from beforehand.spelling import NOTHING, exact, integer, p_value, short
 from beforehand.terms import STATE_WORDS, State
 
 COMPARED: frozenset[State] = MET | {"not_rejected"}
+FURTHER_GROUPS = (
+    "Where comparisons of groups are judged together, the others are those with further groups of the same size and "
+    "without effect."
+)
 NOT_COMPUTED = (
     "Not worked out in this version: which single rows would flip a decision, and what another procedure, valid under "
     "another dependence between p-values, would have decided."
@@ -28,6 +32,7 @@ def firmness(record: Record, lines: tuple[Line, ...]) -> Plain:
             "The margin says how many times the value that decides is smaller, or larger, than its threshold. The last "
             "column is the largest number of hypotheses (m) the family could have had with the rejection still "
             f"standing, if all the others had p = 1.{part if len(shown) < len(compared) else ''}",
+            *([FURTHER_GROUPS] if any(line.family.joint_intervals for line in shown) else []),
             NOT_COMPUTED,
         )
         if compared
