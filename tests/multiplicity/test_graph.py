@@ -200,6 +200,14 @@ def test_all_of_an_absorbing_cycle_may_fall() -> None:
     assert found.adjusted.tolist() == [0.02, 0.04]
 
 
+def test_what_falls_into_a_trap_is_lost() -> None:
+    # by hand: b passes one half to a, the other to d; c and d pass all to each other, and what they hold stays there
+    passes = [[0, 0, 0, 0], [0.5, 0, 0, 0.5], [0, 0, 0, 1], [0, 0, 1, 0]]
+    for leaving in itertools.permutations([1, 2, 3]):
+        assert Graph.of([0, 0.5, 0, 0.5], passes).without(leaving).held.tolist() == [0.25]
+    assert walked(Graph.of([0, 0.5, 0, 0.5], passes), [0.125, 0.001, 0.0, 0.0]).adjusted[0] == 0.5
+
+
 def test_leading_terms() -> None:
     one, small = Leading(2.0), Leading(3.0, 1)
     assert one + small == one

@@ -68,7 +68,7 @@ class Graph:
     """Shape (n,): the share of the level that each node holds."""
     passes: Numbers
     """Shape (n, n + 1): the share that the node of the row passes to that of the column; last, what it passes to
-    nobody. A row sums to 1, or to 0 where all that the node could pass on comes back to it."""
+    nobody. A row sums to 1."""
 
     @classmethod
     def of(cls, weights: ArrayLike, passes: ArrayLike) -> "Graph":
@@ -166,9 +166,9 @@ class Leaving:
     @property
     def passes(self) -> Numbers:
         """What each of them passes to each of them, and last to nobody."""
-        totals = self._flow.sum(axis=1)
-        totals[~totals.astype(bool)] = self._one
-        return np.roll(self._flow / totals[:, None], -1, axis=1)
+        flow = self._flow.copy()
+        flow[~flow.sum(axis=1).astype(bool), 0] = self._one
+        return np.roll(flow / flow.sum(axis=1)[:, None], -1, axis=1)
 
     def leave(self, place: int) -> None:
         """Reject the node at a place of ``nodes``.
@@ -176,11 +176,14 @@ class Leaving:
         With w_k + w_i g_ik, and (g_lk + g_li g_ik) / (1 - g_li g_il), where i is rejected (Bretz et al. 2009). The
         denominator is never computed: it would lose all digits near 0. Instead the way from l to i and back is taken
         out of row l, which then sums to less than 1, and a row counts in proportion to its sum, because whatever
-        enters a node leaves it.
+        enters a node leaves it. Where the denominator is 0, all that a node could pass on comes back to it; it then
+        passes to nobody.
         """
         last = self.nodes.size - 1
         weight, onward, into = self.weights[[place]], self._flow[place], self._flow[:, place + 1].copy()
-        onward = onward / (onward.sum() or self._one)
+        total = onward.sum()
+        onward = onward / (total or self._one)
+        onward[0] = onward[0] if total else self._one
         # the last node moves into the place
         self.nodes[place], self.weights[place] = self.nodes[last], self.weights[last]
         into[place], onward[place + 1] = into[last], onward[last + 1]

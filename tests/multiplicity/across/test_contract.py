@@ -99,6 +99,19 @@ def graph_of_hypotheses(families: list[FamilyResult]) -> dict[str, Any]:
     return {"nodes_are": "hypotheses"} | arrows([member for family in families for member in family.members])
 
 
+def graph_that_traps(families: list[FamilyResult]) -> dict[str, Any]:
+    """Start everywhere; the last two nodes pass all to each other, so that nothing ever leaves them."""
+    nodes = [member for family in families for member in family.members]
+    passes: list[list[Any]] = []
+    for k, node in enumerate(nodes):
+        if len(nodes) - k > 2:
+            passes += [[node, nodes[k + 1], 0.25], [node, nodes[-1], 0.5], [nodes[k + 1], node, 0.25]]
+        elif len(nodes) > 1:
+            passes.append([node, nodes[-1] if k == len(nodes) - 2 else nodes[-2], 1])
+    passes = [one for one in passes if len(nodes) == 2 or one[0] not in nodes[-2:] or one[2] == 1]
+    return {"nodes_are": "hypotheses", "start": {node: f"1/{len(nodes)}" for node in nodes}, "passes": passes}
+
+
 CASES = {
     "parallel": Case(SCHEMES["parallel"], truncated),
     "separate": Case(SCHEMES["separate"], nothing),
@@ -106,6 +119,7 @@ CASES = {
     "shares": Case(SCHEMES["shares"], unequal_shares),
     "graph of families": Case(SCHEMES["graph"], graph_of_families),
     "graph of hypotheses": Case(SCHEMES["graph"], graph_of_hypotheses),
+    "graph that traps": Case(SCHEMES["graph"], graph_that_traps),
 }
 
 

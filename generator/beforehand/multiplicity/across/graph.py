@@ -206,7 +206,7 @@ def replay(  # noqa: PLR0915 -- one text, which recheck.py holds
         return {b: (float(c), 0) if c else (float(multiple), 1) for b, (c, multiple) in sent.items() if c or multiple}
 
     def leave(node: str, held: dict[str, Any], arrows: dict[str, Any]) -> None:
-        sent = arrows.pop(node)
+        sent = arrows.pop(node) or {"": (1.0, 0)}  # all of it would come back: it goes to nobody
         whole: Any = None
         for part in sent.values():
             whole = plus(whole, part)
