@@ -165,7 +165,8 @@ class Family(Keys):
     share: Weight | None = None
     """The share of the study's level, under across_families: shares."""
     truncation: float | None = Field(default=None, ge=0, lt=1)
-    """How much of the level a rejection passes on under across_families: parallel; 0 is Bonferroni."""
+    """The truncation of a truncated procedure, from 0 (Bonferroni) to below 1: the larger, the more is rejected in the
+    family, and the less of the level a rejection passes on under across_families: parallel."""
     exploratory_after_gate: bool = False
     """Whether a family with its own promise is tested only after the confirmatory families."""
     dependence: Dependence | None = None
