@@ -9,7 +9,7 @@ from beforehand.spec.model import Comparisons, Document, EachWith, Groups, Writt
 from beforehand.spec.places import Finding, Path
 
 SAME = ("data", "where", "analysis_set", "outcome")
-"""What all comparisons of such a family share: they are judged by one variance."""
+"""What all comparisons of such a family share."""
 
 
 def check_compared(document: Document, number: int) -> Iterator[Finding]:
@@ -54,8 +54,8 @@ def _sides(block: Block, procedure: Procedure, document: Document) -> Iterator[F
     if not block.two_sided:
         yield Finding(
             block.path,
-            f"'{procedure.name}' judges both sides, and {block.name} has one. Write alternative: two_sided, or take a "
-            "procedure that judges p-values.",
+            f"'{procedure.name}' judges both sides, and {block.name} asks about one. Write alternative: two_sided, "
+            "or take a procedure that judges p-values.",
         )
     elif promise_of(document, block.family).level_is == "one_sided":
         yield Finding(
@@ -74,7 +74,7 @@ def _alike(block: Block, first: Block, procedure: Procedure) -> Iterator[Finding
         yield Finding(
             block.path,
             f"{block.name} differs from {first.name} in: {', '.join(different)}. '{procedure.name}' judges all "
-            "comparisons of a family by one variance, so these must be the same.",
+            "comparisons of a family together, so these must be the same.",
         )
 
 
