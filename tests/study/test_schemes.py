@@ -15,6 +15,7 @@ import pytest
 from small_study import SPEC, write_study
 
 import beforehand
+from beforehand.multiplicity.scheme import SCHEMES
 from beforehand.record.canonical import sha256
 from beforehand.record.manifest import manifest
 from beforehand.report.figures import graph
@@ -231,6 +232,7 @@ def test_the_report_says_how_the_level_was_shared(finished: tuple[str, Any]) -> 
     name, run = finished
     words = repr(view(run.record, ())).replace("\\xa0", " ")
     assert [phrase for phrase in WORDS[name] if phrase not in words] == []
+    assert SCHEMES[run.record.scheme].reference in words
     assert "nan" not in re.findall(r"[a-z]+", words)
 
 

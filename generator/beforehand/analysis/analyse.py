@@ -29,6 +29,7 @@ from beforehand.analysis.records import (
     promise_record,
     results,
     rows_record,
+    scheme_record,
     study_record,
 )
 from beforehand.analysis.supportive import supported, supportive_records
@@ -78,11 +79,12 @@ def analyse(spec: Spec, dataset: Dataset, *, progress: Callable[[str], None] = l
             )
         )
     inputs = input_records(spec, dataset)
+    given = given_to_scheme(spec, covered(spec, [one.entered for one in judged]))
     return Record(
         study=study_record(spec),
         promise=_study_promise(spec),
         scheme=scheme_of(spec),
-        scheme_given=given_to_scheme(spec, covered(spec, [one.entered for one in judged])) or None,
+        scheme_given=given or None,
         order=tuple(order_of(spec)),
         inputs=inputs,
         rows=tuple(rows_record(one) for one in dataset.tables.values()),
@@ -93,7 +95,10 @@ def analyse(spec: Spec, dataset: Dataset, *, progress: Callable[[str], None] = l
         warnings=warned.records,
         unneeded_answers=warned.unneeded_answers,
         agreement=agreement.settle(),
-        methods=method_records(judged, (*computed.values(), *supporting)),
+        methods=(
+            *method_records(judged, (*computed.values(), *supporting)),
+            *([scheme_record(scheme_of(spec))] if given else []),
+        ),
         drawn=drawn(
             families,
             hypotheses,

@@ -23,6 +23,7 @@ from beforehand.data.sets import missing_values, overlaps
 from beforehand.data.table import Table
 from beforehand.hypothesis_tests.contract import NotComputed, Outcome
 from beforehand.hypothesis_tests.nulls import alternative_in_symbols, null_in_symbols
+from beforehand.multiplicity.scheme import SCHEMES
 from beforehand.record.canonical import results_column
 from beforehand.record.model import (
     AnalysisSetRecord,
@@ -42,7 +43,7 @@ from beforehand.record.model import (
 )
 from beforehand.spec.model import Promise
 from beforehand.spec.planned import PlannedFamily, Spec
-from beforehand.terms import STATE_WORDS
+from beforehand.terms import STATE_WORDS, AcrossFamilies
 
 MISSING_NUMBER = math.nan
 MOVING_LEVEL = (
@@ -309,6 +310,23 @@ def _summary(name: str, values: Any, missing: int, *, events: bool) -> GroupSumm
         median=median,
         lower_quartile=lower,
         upper_quartile=upper,
+    )
+
+
+def scheme_record(name: AcrossFamilies) -> MethodRecord:
+    """Say what a scheme across families keeps."""
+    scheme = SCHEMES[name]
+    return MethodRecord(
+        kind="scheme across families",
+        name=name,
+        title=scheme.title,
+        reference=scheme.reference,
+        assumes=(scheme.keeps,),
+        p_is="",
+        second_route=(
+            "the procedures run again at the levels that come out, and the adjusted p of the study by a level that "
+            "rises from 0, on plain lists"
+        ),
     )
 
 

@@ -462,10 +462,10 @@ class AgreementRecord:
 
 @dataclass(frozen=True, kw_only=True)
 class MethodRecord:
-    """A test or a procedure that the run used."""
+    """A test, a procedure or a scheme that the run used."""
 
     kind: str
-    """"statistical test" or "multiplicity procedure"."""
+    """"statistical test", "multiplicity procedure" or "scheme across families"."""
     name: str
     title: str
     reference: str

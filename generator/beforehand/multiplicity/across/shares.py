@@ -15,7 +15,7 @@ from beforehand.multiplicity.scheme import Decisions, Families, decide, one_leve
     keeps="The error rate of the whole study stays at the level, because the families' levels sum to it.",
     decides="p_study",
     replays=WHOLE,
-    reference="Boole's inequality; unequal shares: Moye (2000), Statistics in Medicine 19:767-779",
+    reference="Boole's inequality; Dunn (1961), Journal of the American Statistical Association 56:52-64",
 )
 def shares(families: Families, *, shares: Mapping[str, float | str]) -> Decisions:
     """Test each family at its share of the level; nothing is passed on.
