@@ -59,7 +59,8 @@ def drawn(name: str) -> tuple[Any, ...]:
     return samples[:1] if name == "one_sample_t" else samples
 
 
-@pytest.mark.parametrize("name", [name for name in STATISTICAL_TESTS if name != "supplied_p"])
+# one entry of each way in which samples come and null values are bounded; the composition knows no entry by name
+@pytest.mark.parametrize("name", ["one_sample_t", "welch_t", "paired_t", "mann_whitney", "fisher_exact"])
 def test_forms_are_made_of_one_sided_tests(name: str, outcome: Any) -> None:
     entry, samples = STATISTICAL_TESTS[name], drawn(name)
     a, b = (0.8, 1.9) if entry.scale == "ratio" else (-0.1, 0.3)
