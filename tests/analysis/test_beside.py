@@ -1,6 +1,7 @@
 """Whole studies whose tests take more of a row than its outcome: from the spec to a report that rechecks itself."""
 
 import json
+import math
 import subprocess
 import sys
 from pathlib import Path
@@ -157,6 +158,43 @@ def test_an_adjusted_difference_from_spec_to_report(tmp_path: Path) -> None:
     assert [(one["n"], one["missing"]) for one in flow["summaries"]] == [(29, 1), (28, 2)]
     assert [(one["n"], one["missing"]) for one in robust["summaries"]] == [(29, 1), (28, 2)]
     assert "adjusted for before and water" in record["page"]
+
+
+STAINED = f"""
+- id: stained
+  test: cochran_mantel_haenszel
+  outcome: {{column: stained, values: ["yes"]}}
+  strata: [line, water]
+  {GROUPS}
+  alternative: below
+"""
+
+
+def test_a_stratified_comparison_from_spec_to_report(tmp_path: Path) -> None:
+    lines = with_missing((0, "stained"), (1, "line"), (2, "water"), (4, "water"))
+    record = reported(tmp_path, STAINED, lines=lines)
+    kept = [cells for cells in (line.split(",") for line in lines[1:]) if cells[2] and cells[3] and cells[8]]
+    strata = [(line, water) for line in ("east", "north", "south") for water in ("river", "spring")]
+    tables = [
+        np.array([[sum(c[1:4] == [make, *stratum] and c[8] == word for c in kept) for word in ("yes", "no")]
+                  for make in ("mesh", "felt")])
+        for stratum in strata
+    ]  # fmt: skip
+    total = np.ones(1)
+    for (a, b), (c, d) in (table.tolist() for table in tables):
+        total = np.convolve(total, stats.hypergeom(a + b + c + d, a + c, a + b).pmf(np.arange(a + b + 1)))
+    observed = int(sum(table[0, 0] for table in tables))
+    found = row(tmp_path, "stained")
+    assert found["p"] == pytest.approx(total[: observed + 1].sum(), rel=1e-9)
+    assert found["n"] == len(kept) == 56
+    (words,) = record["hypotheses"]
+    assert words["beside"] == ["stratified by line and water"]
+    assert words["alternative_in_words"] == "the common odds ratio of stained = yes (mesh over felt) is below 1"
+    assert "Breslow-Day test" in record["page"]
+    (planned,) = check(load_spec(tmp_path / "filters.yaml")).hypotheses
+    # no outcome is read: most extreme is a stratum in which all units of the second group have the event, and no other
+    ways = np.prod([math.comb(int(table.sum()), int(table[1].sum())) for table in tables], dtype=float)
+    assert planned.smallest_p == pytest.approx(2 / ways, rel=1e-9)
 
 
 def fault(tmp_path: Path, hypotheses: str, lines: list[str]) -> str:

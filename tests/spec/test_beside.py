@@ -10,6 +10,8 @@ from beforehand.spec.load import read_spec
 
 RATE = f"- {{id: leaks, test: rate_ratio, outcome: leaks, exposure: hours, {GROUPS}, alternative: below}}"
 WELCH = f"- {{id: flow, test: welch_t, outcome: flow, {GROUPS}, alternative: above}}"
+STAINED = 'outcome: {column: stained, values: ["yes"]}'
+CMH = f"- {{id: stained, test: cochran_mantel_haenszel, {STAINED}, strata: [line], {GROUPS}, alternative: below}}"
 LINE = HEAD.count("\n") + 1
 
 
@@ -56,6 +58,25 @@ def message(hypothesis: str) -> str:
             RATE.replace("outcome: leaks", "outcome: flow"),
             "hypothesis 'leaks' needs counts, and column 'flow' is not declared as {kind: count}: whole numbers from 0 "
             "on, of a column of the file.",
+        ),
+        (
+            CMH.replace("line", "flow, line"),
+            "hypothesis 'stained' needs a category with its levels where column 'flow' stands, which is a number.",
+        ),
+        (
+            CMH.replace("line", "line, line"),
+            "the 'strata' of hypothesis 'stained' names 'line' twice.",
+        ),
+        (
+            CMH.replace("line", "make, stained"),
+            "hypothesis 'stained' has the column 'make' twice: here and as its 'groups'.\n"
+            "hypothesis 'stained' has the column 'stained' twice: here and as its 'outcome'.",
+        ),
+        (
+            WELCH.replace("welch_t, outcome", "analysis_of_covariance, covariates: [filter, nowhere], outcome"),
+            "hypothesis 'flow' needs a number or a count or a category with its levels where column 'filter' stands, "
+            "which is a text.\n"
+            "hypothesis 'flow' names the column 'nowhere', which is not declared. The nearest is 'water'.",
         ),
         (
             "- {id: flow, test: pearson_correlation, outcome: flow, alternative: above}",

@@ -48,8 +48,6 @@ def _columns(block: Block, word: Word) -> Iterator[Finding]:
         names: tuple[str, ...] = getattr(block.written, word)
         for place, name in enumerate(names):
             yield from _fits(block, name, kinds, (*path, place))
-            if name in names[:place]:
-                yield Finding((*path, place), f"{block.name} names the column '{name}' twice among its {word}")
 
 
 def _time(block: Block) -> Iterator[Finding]:
