@@ -80,9 +80,7 @@ def of_the_study(line: Line) -> str:
     """Write how the adjusted p of the study comes from that of the family."""
     study = calculated(line.number("p_study"), line.threshold)
     if line.scheme == "shares":
-        return (
-            f"divided by the share {short((line.family.local_level or line.family.level) / line.family.level)}: {study}"
-        )
+        return f"divided by the share {_share(line.family)}: {study}"
     if line.scheme in ("parallel", "graph"):
         return f"enough is held from {study} on"
     return f"families before: {study}"
