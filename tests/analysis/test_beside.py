@@ -11,6 +11,7 @@ import numpy as np
 import pytest
 from filter_study import GROUPS, column, with_missing, write_filters
 from scipy import stats
+from statsmodels.duration.survfunc import survdiff
 
 import beforehand
 from beforehand.data.dataset import read_data
@@ -195,6 +196,50 @@ def test_a_stratified_comparison_from_spec_to_report(tmp_path: Path) -> None:
     # no outcome is read: most extreme is a stratum in which all units of the second group have the event, and no other
     ways = np.prod([math.comb(int(table.sum()), int(table[1].sum())) for table in tables], dtype=float)
     assert planned.smallest_p == pytest.approx(2 / ways, rel=1e-9)
+
+
+TIMES = f"""
+- id: bursts
+  test: log_rank
+  time: {{column: days, event: {{column: state, values: [burst]}}}}
+  strata: [line]
+  {GROUPS}
+  alternative: below
+- id: hazard
+  test: cox_hazard_ratio
+  time: {{column: days, event: {{column: state, values: [burst]}}, ties: efron}}
+  {GROUPS}
+  null_hypothesis: {{at_least: 1.25}}
+  margin_basis: {{text: what the plant allows, source: its rules}}
+"""
+
+
+def test_times_until_an_event_from_spec_to_report(tmp_path: Path) -> None:
+    lines = with_missing((0, "state"), (1, "days"), (2, "line"), (4, "days"))
+    record = reported(tmp_path, TIMES, lines=lines)
+    kept = [cells for cells in (line.split(",") for line in lines[1:]) if cells[9] and cells[10]]
+    stratified = [cells for cells in kept if cells[2]]
+    time, event, group, line = zip(
+        *((float(c[9]), c[10] == "burst", c[1] == "mesh", c[2]) for c in stratified), strict=True
+    )
+    _, p = survdiff(np.array(time), np.array(event), np.array(group, dtype=int), strata=np.array(line))
+    found = row(tmp_path, "bursts")
+    assert found["n"] == len(stratified) == 56
+    assert found["estimate"] < 1
+    assert found["p"] == pytest.approx(p / 2, rel=1e-9)
+    assert row(tmp_path, "hazard")["n"] == len(kept) == 57
+    bursts, hazard = record["hypotheses"]
+    assert bursts["outcome"] == "days until state = burst"
+    assert bursts["beside"] == ["stratified by line"]
+    assert bursts["alternative_in_words"] == "the hazard ratio of days until state = burst (mesh over felt) is below 1"
+    assert hazard["null"] == "h₁ / h₂ ≥ 1.25"
+    watched = {make: [c for c in stratified if c[1] == make] for make in ("mesh", "felt")}
+    assert [(one["events"], one["exposure"]) for one in bursts["summaries"]] == [
+        (sum(c[10] == "burst" for c in rows), sum(float(c[9]) for c in rows)) for rows in watched.values()
+    ]
+    assert "they are built differently" in record["page"]
+    # both are certain to be judged by the second computation too: it is compared before anything is written
+    assert {one["quantity"] for one in record["agreement"]} >= {"p", "estimate", "lower", "upper"}
 
 
 def fault(tmp_path: Path, hypotheses: str, lines: list[str]) -> str:

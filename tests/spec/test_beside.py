@@ -12,6 +12,10 @@ RATE = f"- {{id: leaks, test: rate_ratio, outcome: leaks, exposure: hours, {GROU
 WELCH = f"- {{id: flow, test: welch_t, outcome: flow, {GROUPS}, alternative: above}}"
 STAINED = 'outcome: {column: stained, values: ["yes"]}'
 CMH = f"- {{id: stained, test: cochran_mantel_haenszel, {STAINED}, strata: [line], {GROUPS}, alternative: below}}"
+LOG_RANK = (
+    "- {id: bursts, test: log_rank, time: {column: days, event: {column: state, values: [burst]}}, "
+    f"{GROUPS}, alternative: below}}"
+)
 LINE = HEAD.count("\n") + 1
 
 
@@ -79,6 +83,34 @@ def message(hypothesis: str) -> str:
             "hypothesis 'flow' names the column 'nowhere', which is not declared. The nearest is 'water'.",
         ),
         (
+            LOG_RANK.replace("time", "outcome: flow, time"),
+            "hypothesis 'bursts' has an outcome and a time: its outcome is the time until the event. Take 'outcome' "
+            "out.",
+        ),
+        (
+            LOG_RANK.replace("values: [burst]", "values: [bursts]"),
+            "column 'state' has no level 'bursts' to count. The nearest is 'burst'.",
+        ),
+        (
+            LOG_RANK.replace("values: [burst]", "values: [burst, running]"),
+            "hypothesis 'bursts' counts every level of column 'state', so every time is that of an event.",
+        ),
+        (
+            LOG_RANK.replace("column: days", "column: water").replace("column: state", "column: hours"),
+            "hypothesis 'bursts' needs a number or a count where column 'water' stands, which is a category.\n"
+            "hypothesis 'bursts' needs a category with its levels or a text where column 'hours' stands, which is a "
+            "number.",
+        ),
+        (
+            LOG_RANK.replace("}}", "}, ties: exact}"),
+            "'exact' for 'ties' is not available yet.",
+        ),
+        (
+            "- {id: bursts, test: log_rank, outcome: days, alternative: below, "
+            "groups: {column: make, first: mesh, second: felt}}",
+            "hypothesis 'bursts' needs the key 'time': the time until the event, as {column, event: {column, values}}.",
+        ),
+        (
             "- {id: flow, test: pearson_correlation, outcome: flow, alternative: above}",
             "hypothesis 'flow' does not say which two columns it relates. Write outcome: {first, second} in "
             "'hypotheses'.",
@@ -107,6 +139,29 @@ def message(hypothesis: str) -> str:
 )
 def test_message(hypothesis: str, said: str) -> None:
     assert message(hypothesis) == said
+
+
+def test_many_hypotheses_of_one_time() -> None:
+    many = (
+        "    hypotheses_from: {test: log_rank, each: outcome, outcomes: [leaks], alternative: below, "
+        f"time: {{column: days, event: {{column: state, values: [burst]}}}}, {GROUPS}}}\n"
+    )
+    with pytest.raises(SpecFault) as caught:
+        read_spec(HEAD.replace("    hypotheses:\n", many).encode(), Path("filters.yaml"))
+    assert [fault.text for fault in caught.value.faults] == [
+        "'hypotheses_from' of family 'main' has one time for all, so each would ask the same. Write them out under "
+        "'hypotheses'."
+    ]
+
+
+def test_pairs_of_levels_may_have_a_time() -> None:
+    pairs = (
+        "    comparisons: {test: log_rank, groups: line, pairs: all, alternative: two_sided, "
+        "time: {column: days, event: {column: state, values: [burst]}}}\n"
+    )
+    spec = read_spec(HEAD.replace("    hypotheses:\n", pairs).encode(), Path("filters.yaml"))
+    assert [one.id for one in spec.hypotheses] == ["main/south-north", "main/east-north", "main/east-south"]
+    assert all(one.observed is not None and one.outcome is None for one in spec.hypotheses)
 
 
 def test_sound() -> None:

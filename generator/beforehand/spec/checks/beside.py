@@ -8,7 +8,7 @@ from beforehand.spec.checks.blocks import Block
 from beforehand.spec.checks.data_sets import column
 from beforehand.spec.expressions import Known
 from beforehand.spec.hints import nearest
-from beforehand.spec.model import EventOutcome, Groups, PairOutcome
+from beforehand.spec.model import EventOutcome, Groups, HypothesesFrom, PairOutcome
 from beforehand.spec.places import Finding, Path
 
 NEEDED: dict[Word, str] = {
@@ -53,6 +53,9 @@ def _columns(block: Block, word: Word) -> Iterator[Finding]:
 def _time(block: Block) -> Iterator[Finding]:
     time, path = block.written.time, (*block.path, "time")
     assert time is not None
+    if isinstance(block.written, HypothesesFrom):
+        told = f"{block.name} has one time for all, so each would ask the same. Write them out under 'hypotheses'."
+        yield Finding(path, told, at_key=True)
     if getattr(block.written, "outcome", None) is not None:
         told = f"{block.name} has an outcome and a time: its outcome is the time until the event. Take 'outcome' out."
         yield Finding((*block.path, "outcome"), told, at_key=True)

@@ -181,6 +181,8 @@ def _of_kind(block: Block, name: str, kind: str, path: Path) -> Iterator[Finding
 
 def _outcomes(block: Block) -> Iterator[Finding]:
     written, path = block.written, (*block.path, "outcome")
+    if block.test is not None and "time" in block.test.takes:
+        return  # the event stands under 'time'
     if isinstance(written, HypothesesFrom):
         for place, name in enumerate(written.outcomes or ()):
             yield from _outcome(block, name, written.values, (*block.path, "outcomes", place), "values")
