@@ -16,7 +16,7 @@ from statsmodels.duration.survfunc import survdiff
 import beforehand
 from beforehand.data.dataset import read_data
 from beforehand.data.samples import take, unlabelled
-from beforehand.errors import DataFault
+from beforehand.errors import DataFault, SpecFault
 from beforehand.planning.checking import check
 from beforehand.spec.load import load_spec
 from beforehand.study import report
@@ -159,6 +159,35 @@ def test_an_adjusted_difference_from_spec_to_report(tmp_path: Path) -> None:
     assert [(one["n"], one["missing"]) for one in flow["summaries"]] == [(29, 1), (28, 2)]
     assert [(one["n"], one["missing"]) for one in robust["summaries"]] == [(29, 1), (28, 2)]
     assert "adjusted for before and water" in record["page"]
+
+
+SUPPORTED = """
+supportive:
+  - {id: raw, of: flow, change: {test: welch_t}, because: without covariates, analysis: sensitivity}
+  - {id: more, of: flow, change: {covariates: [before, line]}, because: by line too, analysis: sensitivity}
+  - {id: odd, of: flow, change: {test: welch_t, covariates: [line]}, because: a slip, analysis: sensitivity}
+"""
+
+
+def test_supportive_analyses_with_other_covariates_or_none(tmp_path: Path) -> None:
+    path = write_filters(tmp_path, ADJUSTED)
+    path.write_text(path.read_text("utf-8") + SUPPORTED, "utf-8")
+    with pytest.raises(SpecFault) as refused:
+        beforehand.run(path)
+    assert [fault.text for fault in refused.value.faults] == [
+        "supportive analysis 'odd' has 'covariates', and the test 'welch_t' uses no 'covariates'. Take it out."
+    ]
+    sound = "\n".join(line for line in path.read_text("utf-8").splitlines() if "id: odd" not in line)
+    path.write_text(sound + "\n", "utf-8")
+    report(path, tmp_path / "out", only=("html",))
+    recheck = [sys.executable, "-I", str(tmp_path / "out" / "recheck.py")]
+    assert subprocess.run(recheck, capture_output=True, check=False).returncode == 0
+    raw, more = beforehand.run(path).record.supportive
+    x, y = (numbers("flow", make) for make in ("mesh", "felt"))
+    expected = stats.ttest_ind(x, y, equal_var=False, alternative="greater").pvalue
+    assert row(tmp_path, "raw")["p"] == pytest.approx(expected, rel=1e-9)
+    assert raw.changes[1] == "covariates: none instead of before, water"
+    assert more.changes == ("covariates: before, line instead of before, water",)
 
 
 STAINED = f"""

@@ -4,6 +4,8 @@ from collections.abc import Iterator
 from dataclasses import dataclass
 from typing import Any
 
+from beforehand.hypothesis_tests.beside import BESIDE
+from beforehand.hypothesis_tests.contract import STATISTICAL_TESTS
 from beforehand.spec.expand import WrittenOut, filled, written_out
 from beforehand.spec.model import Change, Document, Family, NullHypothesis, Supportive, WrittenHypothesis
 from beforehand.spec.planned import PlannedSupportive
@@ -54,10 +56,16 @@ def side_of(written: WrittenHypothesis) -> Alternative | None:
 
 
 def _made(base: WrittenHypothesis, change: Change, id: str) -> WrittenHypothesis:
-    """Make the change, and bring along what follows from it: the options of another test, the side of another null."""
+    """Make the change, and bring along what follows from it: the options of another test, the side of another null.
+
+    What another test doesn't take beside the outcome is left behind: a comparison without covariates is another test.
+    """
     update: dict[str, Any] = {key: getattr(change, key) for key in change.model_fields_set}
     if update.get("test", base.test) != base.test:
         update.setdefault("options", {})
+        for word in BESIDE if update["test"] in STATISTICAL_TESTS else ():
+            if word not in STATISTICAL_TESTS[update["test"]].takes:
+                update.setdefault(word, None)
     if change.null_hypothesis:
         sided = change.null_hypothesis.form != "at"
         update.setdefault("alternative", None if sided else side_of(base))
