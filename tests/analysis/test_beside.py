@@ -14,14 +14,20 @@ from scipy import stats
 from statsmodels.duration.survfunc import survdiff
 
 import beforehand
+from beforehand.data.beside import beside
 from beforehand.data.dataset import read_data
 from beforehand.data.samples import take, unlabelled
-from beforehand.errors import DataFault, SpecFault
+from beforehand.errors import DataFault, SpecFault, TwoComputationsDisagree
 from beforehand.planning.checking import check
 from beforehand.spec.load import load_spec
 from beforehand.study import report
 
 RATE = f"- {{id: leaks, test: rate_ratio, outcome: leaks, exposure: hours, {GROUPS}, alternative: below}}\n"
+
+
+CLEAN = (
+    f"- {{id: flow, test: analysis_of_covariance, outcome: flow, covariates: [water], {GROUPS}, alternative: above}}"
+)
 
 
 def reported(folder: Path, hypotheses: str, **how: Any) -> dict[str, Any]:
@@ -59,6 +65,30 @@ def test_a_rate_ratio_from_spec_to_report(tmp_path: Path) -> None:
     assert [(one["events"], one["exposure"]) for one in words["summaries"]] == [(x, t), (y, u)]
     for said in ("events counted per hours", "Beside the outcome", "Events and what they were counted in"):
         assert said in record["page"]
+
+
+def test_the_second_computation_sees_exposures_that_changed_sides(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    def swapped(*asked: Any) -> dict[str, Any]:
+        return {word: columns[::-1] for word, columns in beside(*asked).items()}
+
+    monkeypatch.setattr("beforehand.data.samples.beside", swapped)
+    with pytest.raises(TwoComputationsDisagree) as found:
+        beforehand.run(write_filters(tmp_path, RATE))
+    assert {one.quantity for one in found.value.disagreements} >= {"estimate", "p"}
+
+
+def test_the_second_computation_sees_rows_without_an_exposure_that_were_kept(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    def complete(table: Any, hypothesis: Any, rows: Any) -> Any:
+        return np.zeros(rows.size, dtype=bool)
+
+    monkeypatch.setattr("beforehand.data.samples.without", complete)
+    with pytest.raises(TwoComputationsDisagree) as found:
+        beforehand.run(write_filters(tmp_path, CLEAN, lines=with_missing((0, "water"))))
+    assert {one.quantity for one in found.value.disagreements} >= {"analysed units"}
 
 
 def test_a_row_without_an_exposure_is_incomplete(tmp_path: Path) -> None:

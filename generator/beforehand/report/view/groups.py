@@ -8,7 +8,7 @@ from beforehand.record.model import GroupSummary
 from beforehand.report.view import tables
 from beforehand.report.view.lines import Line
 from beforehand.report.view.model import Cell, Head, Row, Table
-from beforehand.spelling import NOTHING, THIN, decimal, integer, number
+from beforehand.spelling import NOTHING, THIN, decimal, integer, number, short
 
 NAMED = 2
 PAIRS = "Of pairs, the column Missing counts those that lack at least one of their two values, on both sides alike."
@@ -62,7 +62,7 @@ def _events(found: Summaries, of_all: int) -> Table:
 def _rates(found: Summaries, of_all: int) -> Table:
     cells = [
         (
-            *_sizes(one), Cell(integer(one.events or 0), "number"), Cell(number(one.exposure or 0.0, 6), "number"),
+            *_sizes(one), Cell(integer(one.events or 0), "number"), Cell(short(one.exposure or 0.0, 6), "number"),
             Cell(_rate(one), "number"), Cell(_users(labels, of_all), "next"),
         )
         for (_, one), labels in found.items()
