@@ -24,7 +24,7 @@ families:
     question: Do saws with oil a stop more often than those with oil d?
     procedure: benjamini_hochberg
     hypotheses:
-      - id: stops
+      - id: oftener
         test: TEST
         outcome: stops
         groups: {column: oil, first: a, second: d}
