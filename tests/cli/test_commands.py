@@ -159,6 +159,13 @@ def test_methods_lists_every_entry(capsys: pytest.CaptureFixture[str]) -> None:
             assert name in capsys.readouterr().out
 
 
+def test_methods_says_what_a_test_takes_of_each_row(capsys: pytest.CaptureFixture[str]) -> None:
+    assert exit_code(["methods", "log_rank"]) == 0
+    assert "  takes of each row  strata where the plan has any; time\n" in capsys.readouterr().out
+    assert exit_code(["methods", "welch_t"]) == 0
+    assert "takes of each row" not in capsys.readouterr().out
+
+
 def test_an_interruption_is_130(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
     def stop(*_: object, **__: object) -> None:
         raise KeyboardInterrupt

@@ -72,12 +72,19 @@ def _entry(name: str, catalogues: "dict[str, Catalogue[Any]]") -> dict[str, Any]
                 "name": name,
                 "kind": heading.removesuffix("s"),
                 **declared,
+                **_beside(entry),
                 "options": options,
                 "documentation": text,
             }
     near = next((found for catalogue in catalogues.values() if (found := catalogue.nearest(name))), None)
     hint = f"The nearest name is '{near}'." if near else "`beforehand methods` lists all names."
     raise CallFault("beforehand methods", f"no test, procedure or warning is called '{name}'. {hint}")
+
+
+def _beside(entry: Any) -> dict[str, tuple[str, ...]]:
+    """Give what a test takes of each row beside its outcome: keys of a hypothesis, not options."""
+    takes = getattr(entry, "takes", ())
+    return {"beside": tuple(word if word in entry.needs else f"{word} where the plan has any" for word in takes)}
 
 
 def _default(option: Any) -> str:
@@ -104,6 +111,7 @@ LABELS = {
     "null": "null hypothesis",
     "null_default": "its usual value",
     "takes": "also takes",
+    "beside": "takes of each row",
     "assumptions": "assumes",
     "second_route": "computed again by",
     "controls": "controls",
