@@ -18,7 +18,6 @@ from beforehand.terms import CRITERION_WORDS
 
 ROOT = Path(__file__).parents[1]
 STUDIES = sorted(path.parent.name for path in (ROOT / "specs").glob("*/spec.yaml"))
-FIRST_PAGE = "page-1.png"
 
 
 def sample_run(study: str) -> None:
@@ -29,7 +28,7 @@ def sample_run(study: str) -> None:
         report(ROOT / "specs" / study / "spec.yaml", folder)
         (folder / RUN).unlink()
         picture = ["pdftoppm", "-r", "80", "-png", "-f", "1", "-l", "1", "-singlefile"]
-        subprocess.run([*picture, str(folder / "report.pdf"), str(folder / "page-1")], check=True)
+        subprocess.run([*picture, str(folder / "report.pdf"), str(target)], check=True)
         shutil.rmtree(target, ignore_errors=True)
         shutil.copytree(folder, target)
 

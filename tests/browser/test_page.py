@@ -7,7 +7,7 @@ from pathlib import Path
 import pytest
 
 ROOT = Path(__file__).parents[2]
-STUDIES = sorted(path.name for path in (ROOT / "sample_runs").iterdir())
+STUDIES = sorted(path.name for path in (ROOT / "sample_runs").iterdir() if path.is_dir())
 OFFLINE = [
     "--headless", "--no-sandbox", "--disable-gpu", "--disable-quic", "--no-first-run",
     "--disable-background-networking", "--disable-component-update", "--disable-sync", "--enable-logging=stderr",
